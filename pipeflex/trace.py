@@ -63,7 +63,7 @@ class Formula:
 FORMULAS: Final[dict[str, Formula]] = {}
 """All formulas by module-qualified name, filled as their modules are imported."""
 
-_OF_FUNCTION: Final[dict[Callable[..., Values], Formula]] = {}
+OF_FUNCTION: Final[dict[Callable[..., Values], Formula]] = {}
 
 
 F = TypeVar("F", bound=Callable[..., Values])
@@ -94,7 +94,7 @@ def formula(equation: str, *, ref: str, words: str = "") -> Callable[[F], F]:
                 name: p.default for name, p in parameters.items() if p.default is not inspect.Parameter.empty
             },
         )
-        FORMULAS[entry.name] = _OF_FUNCTION[function] = entry
+        FORMULAS[entry.name] = OF_FUNCTION[function] = entry
         return function
 
     return register
@@ -102,7 +102,7 @@ def formula(equation: str, *, ref: str, words: str = "") -> Callable[[F], F]:
 
 def formula_of(function: Callable[..., Values]) -> Formula:
     """The formula that stands beside a function."""
-    return _OF_FUNCTION[function]
+    return OF_FUNCTION[function]
 
 
 @dataclass(frozen=True)

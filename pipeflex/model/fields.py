@@ -10,6 +10,7 @@ import numpy as np
 
 from pipeflex.errors import Fault, InputError, MissingInput, PipeflexError, refuse
 from pipeflex.quantities import KINDS
+from pipeflex.trace import OF_FUNCTION, Choice, StepTable
 from pipeflex.units import si
 
 SPEC: Final = "spec"
@@ -283,8 +284,13 @@ def content(value: Any) -> Any:
         return tuple(content(v) for v in value)
     if isinstance(value, StrEnum):
         return str(value)
+    if isinstance(value, (Choice, StepTable)):
+        return repr(value)
     if callable(value) and hasattr(value, "__qualname__"):
-        return f"{value.__module__}.{value.__qualname__}"
+        known = OF_FUNCTION.get(value)
+        return f"{value.__module__}.{value.__qualname__}" + (f": {known.text}" if known else "")
+    if isinstance(value, float):
+        return float(value)
     return value
 
 
@@ -343,9 +349,9 @@ def sub(kind: Callable[[], type], *, optional: bool = False, factory: Any = MISS
     return _field(Sub(kind, optional=optional), None if optional else MISSING, factory)
 
 
-def many(kind: Callable[[], type], *, default: Any = ()) -> Any:
+def many(kind: Callable[[], type], *, factory: Any = tuple) -> Any:
     """Declare a field that holds several records of one class."""
-    return _field(Sub(kind, many=True), default)
+    return _field(Sub(kind, many=True), MISSING, factory)
 
 
 def names(*, default: Any = (), label: str = "") -> Any:

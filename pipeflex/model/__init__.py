@@ -1,0 +1,1 @@
+"""Frozen records of a design and its outcome."""
