@@ -1,0 +1,1 @@
+"""Reads the tables: pipe sizes, materials, bends; SI numbers with their provenance."""
