@@ -47,6 +47,7 @@ DISPLAY: Final[dict[str, tuple[Display, Display]]] = {
     "movement": (_d("mm", Q(1, 1000), 1, "mm"), _d("in", _INCH, 2, "inch")),
     "area": (_d("mm²", Q(1, 10**6), 0, "mm**2"), _d("in²", _INCH**2, 3, "inch**2")),
     "section modulus": (_d("cm³", Q(1, 10**6), 1, "cm**3"), _d("in³", _INCH**3, 2, "inch**3")),
+    "volume": (_d("m³", 1, 2, "m**3"), _d("ft³", _FOOT**3, 1, "ft**3")),
     "second moment": (_d("cm⁴", Q(1, 10**8), 0, "cm**4"), _d("in⁴", _INCH**4, 2, "inch**4")),
     "mass": (_d("kg", 1, 1, "kg"), _d("lb", _POUND, 1, "lb")),
     "mass per length": (_d("kg/m", 1, 2, "kg/m"), _d("lb/ft", _POUND / _FOOT, 2, "lb/ft")),

@@ -66,6 +66,9 @@ class Material(Record):
     expansion: Curve = anything()
     modulus: Curve = anything()
     stresses: FrozenMap = anything()
+    joined_as: str = text()
+    joined_stresses: FrozenMap = anything(default=FrozenMap())
+    """Allowable stresses once welding or brazing has destroyed the temper, where that makes a difference."""
     stated: str = text(longest=600)
     """Source and origin of density, Poisson's ratio, tensile strength and minimum temperature."""
 
@@ -145,9 +148,9 @@ class Pipe(Record):
         return self.materials[int(np.ravel(self.material_row)[0])]
 
     @property
-    def stress_free_joint(self) -> bool:
-        """Whether the joints leave the temper of the metal as it was."""
-        return self.joint in ("threaded", "flanged")
+    def heated_joint(self) -> bool:
+        """Whether the joints destroy the temper of the metal."""
+        return self.joint in ("welded", "brazed")
 
 
 def _first(value: object) -> float:

@@ -1,0 +1,149 @@
+"""ASME B31.3 Process Piping: displacement stress range, cycles, screening.
+
+Texts from memory, confirm against the licensed standard; where a clause was read, its test says so.
+"""
+
+import dataclasses
+from functools import cache
+from typing import Any, Final
+
+import numpy as np
+
+from pipeflex.model.duty import PipingCode
+from pipeflex.model.fields import FrozenMap
+from pipeflex.trace import Choice, formula
+
+_2018: Final = "ASME B31.3-2018 para. 302.3.5(d)"
+_2022: Final = "ASME B31.3-2022 para. 302.3.5(d)"
+
+LEAST_F: Final = 0.15
+"""Least stress range factor."""
+
+S_CAP: Final = 138e6
+"""Greatest S_c and S_h where f exceeds 1 [Pa]: 20 ksi, printed 138 MPa."""
+
+SCREENING_CONSTANT: Final = 0.208
+"""208 000 (mm/m)2, printed in millimetres and metres; the U.S. form has 30 (in/ft)2."""
+
+
+@formula("f = max(f_min, min(f_m, 6.0*N**-0.2))", ref=f"{_2018} eq. (1c)")
+def range_factor_2018(N: Any, f_m: Any, f_min: Any = LEAST_F) -> Any:  # noqa: N803
+    """Stress range factor, editions 2004 to 2020.
+
+    N : equivalent full cycles, at least 1. f_m : 1.0, or 1.2 where para. 302.3.5(d) permits.
+    """
+    return np.maximum(f_min, np.minimum(f_m, 6.0 * np.asarray(N) ** -0.2))
+
+
+@formula("f = max(f_min, min(f_m, 20*N**-0.333))", ref=f"{_2022} eq. (1c), the exponent as printed")
+def range_factor_2022(N: Any, f_m: Any, f_min: Any = LEAST_F) -> Any:  # noqa: N803
+    """Stress range factor of the 2022 edition."""
+    return np.maximum(f_min, np.minimum(f_m, 20 * np.asarray(N) ** -0.333))
+
+
+@formula("S_c_used = min(S_c, S_cap)", ref=f"{_2018}: at most 138 MPa (20 ksi) where f exceeds 1")
+def cold_allowable_capped(S_c: Any, S_cap: Any = S_CAP) -> Any:  # noqa: N803
+    """S_c [Pa] as used where f exceeds 1."""
+    return np.minimum(S_c, S_cap)
+
+
+@formula("S_c_used = S_c", ref=_2018)
+def cold_allowable(S_c: Any) -> Any:  # noqa: N803
+    """S_c [Pa] as used where f does not exceed 1."""
+    return S_c
+
+
+@formula("S_h_used = min(S_h, S_cap)", ref=f"{_2018}: at most 138 MPa (20 ksi) where f exceeds 1")
+def hot_allowable_capped(S_h: Any, S_cap: Any = S_CAP) -> Any:  # noqa: N803
+    """S_h [Pa] as used where f exceeds 1."""
+    return np.minimum(S_h, S_cap)
+
+
+@formula("S_h_used = S_h", ref=_2018)
+def hot_allowable(S_h: Any) -> Any:  # noqa: N803
+    """S_h [Pa] as used where f does not exceed 1."""
+    return S_h
+
+
+@formula("S_A = f*(1.25*S_c_used + 0.25*S_h_used)", ref=f"{_2018} eq. (1a)")
+def allowable_range(f: Any, S_c_used: Any, S_h_used: Any) -> Any:  # noqa: N803
+    """Allowable displacement stress range [Pa]."""
+    return f * (1.25 * S_c_used + 0.25 * S_h_used)
+
+
+@formula("S_A = f*(1.25*(S_c_used + S_h_used) - S_L)", ref=f"{_2018} eq. (1b)")
+def range_with_unused_sustained(f: Any, S_c_used: Any, S_h_used: Any, S_L: Any) -> Any:  # noqa: N803
+    """Allowable displacement stress range [Pa] with the unused sustained stress added.
+
+    S_L [Pa] : sustained stress at the same point in the worst support state, not above S_h.
+    """
+    return f * (1.25 * (S_c_used + S_h_used) - S_L)
+
+
+@formula("N = N_E + r_i**5*N_i", ref="ASME B31.3-2018 para. 302.3.5(d) eq. (1d)")
+def equivalent_cycles_2018(N_E: Any, r_i: Any, N_i: Any) -> Any:  # noqa: N803
+    """Equivalent full cycles of N_E full ones and N_i of the part r_i of the range, editions 2004 to 2020."""
+    return N_E + r_i**5 * N_i
+
+
+@formula("N = N_E + r_i**3*N_i", ref="ASME B31.3-2022 para. 302.3.5(d) eq. (1d)")
+def equivalent_cycles_2022(N_E: Any, r_i: Any, N_i: Any) -> Any:  # noqa: N803
+    """Equivalent full cycles by the slope of the 2022 edition."""
+    return N_E + r_i**3 * N_i
+
+
+@formula("q = D_o*y/(L_dev - U_a)**2", ref="ASME B31.3-2018 para. 319.4.1(c) eq. (16)")
+def screening_value(D_o: Any, y: Any, L_dev: Any, U_a: Any) -> Any:  # noqa: N803
+    """Screening value of one run of one size between two anchors, nothing between them.
+
+    y : resultant growth to be absorbed [m]. L_dev : developed length [m]. U_a : distance of the anchors [m].
+    """
+    return D_o * y / (L_dev - U_a) ** 2
+
+
+@formula("K_1 = K_code*S_A/E_a", ref="ASME B31.3-2018 para. 319.4.1(c): 208 000 S_A/E_a (mm/m)2")
+def greatest_screening_value(S_A: Any, E_a: Any, K_code: Any = SCREENING_CONSTANT) -> Any:  # noqa: N803
+    """Greatest screening value at which no formal analysis is asked."""
+    return K_code * S_A / E_a
+
+
+def severe_cyclic(S_E: Any, S_A: Any, N: Any) -> Any:  # noqa: N803
+    """Whether cyclic conditions are severe: S_E above 0.8 S_A and N above 7000 (ASME B31.3-2018 para. 300.2)."""
+    return (S_E > 0.8 * S_A) & (np.asarray(N) > 7000)
+
+
+_CAPS: Final = (
+    Choice("f > 1", cold_allowable_capped, cold_allowable),
+    Choice("f > 1", hot_allowable_capped, hot_allowable),
+)
+_CONFIRM: Final = "Clauses from memory: confirm against the licensed {}."
+
+
+@cache
+def editions() -> tuple[PipingCode, ...]:
+    """The editions held here."""
+    with_sustained = Choice("S_h > S_L", range_with_unused_sustained, allowable_range)
+    b31_3_2018 = PipingCode(
+        key="B31.3-2018",
+        title="ASME B31.3 Process Piping",
+        edition="2018",
+        stress_tables=("stress/asme_b31_3_2018", "stress/asme_b31_3_2008", "stress/copper_tube_handbook"),
+        cycles_exponent=5.0,
+        allowable_range=(range_factor_2018, *_CAPS, allowable_range),
+        allowable_range_with_sustained=(range_factor_2018, *_CAPS, with_sustained),
+        screening=(screening_value, greatest_screening_value),
+        severe_cyclic=severe_cyclic,
+        remarks=(_CONFIRM.format("ASME B31.3-2018"),),
+        options=FrozenMap({"ferrous_strength": 517e6, "ferrous_temperature": 371 + 273.15}),
+    )
+    b31_3_2022 = dataclasses.replace(
+        b31_3_2018,
+        key="B31.3-2022",
+        edition="2022",
+        stress_tables=("stress/asme_b31_3_2022", *b31_3_2018.stress_tables),
+        cycles_exponent=3.0,
+        allowable_range=(range_factor_2022, *_CAPS, allowable_range),
+        allowable_range_with_sustained=(range_factor_2022, *_CAPS, with_sustained),
+        remarks=(_CONFIRM.format("ASME B31.3-2022"),),
+    )
+    return b31_3_2018, b31_3_2022
