@@ -183,7 +183,7 @@ class Table:
             matching = [row for row in rows if cells[row] == wanted]
             if not matching:
                 raise TableError(
-                    Fault(f"{self.id}: {column}", wanted, near=_near(wanted, [cells[r] for r in rows]))
+                    Fault(f"{self.id}: {column}", wanted, near=near(wanted, [cells[r] for r in rows]))
                 )
             rows = matching
         return rows[0]
@@ -191,7 +191,7 @@ class Table:
     def _column(self, name: str) -> Column:
         if name not in self.columns:
             raise TableError(
-                Fault(self.id, name, allowed="a column of the table", near=_near(name, self.columns))
+                Fault(self.id, name, allowed="a column of the table", near=near(name, self.columns))
             )
         return self.columns[name]
 
@@ -212,7 +212,7 @@ def table(id: str) -> Table:
     places = [(root / f"{id}.csv", origin) for root, origin in _roots()] if _NAME.fullmatch(id) else []
     found = [(path, origin) for path, origin in places if path.is_file()]
     if not found:
-        raise TableError(Fault("table", id, near=_near(id, tables())))
+        raise TableError(Fault("table", id, near=near(id, tables())))
     if len(found) > 1:
         raise InputError(Fault("table", id, allowed="another name: pipeflex has a table of this name"))
     path, origin = found[0]
@@ -233,7 +233,7 @@ def _roots() -> list[tuple[Path, str]]:
     return roots
 
 
-def _near(wanted: str, entries: Iterable[str]) -> tuple[str, ...]:
+def near(wanted: str, entries: Iterable[str]) -> tuple[str, ...]:
     return tuple(get_close_matches(wanted, sorted({e for e in entries if e}), n=_NEAR, cutoff=0.0))
 
 
