@@ -1,0 +1,1 @@
+"""What people see of an outcome: sentences, drawings, ledger, page. No physics."""
