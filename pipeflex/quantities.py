@@ -94,6 +94,8 @@ SYMBOLS: Final[dict[str, Symbol]] = _symbols(
     ("e_cold", "growth per length from the reference temperature to the coldest", "strain", "e_cold"),
     ("e_0", "growth per length from the reference temperature to the installed one", "strain", "e_0"),
     ("e_1", "growth per length from the reference temperature to the state's", "strain", "e_1"),
+    ("e_h", "growth per length from installed to hottest", "strain", "e_h"),
+    ("e_w", "growth per length of the case that moves the line most", "strain", "e_w"),
     ("e_P", "pressure elongation per length", "strain", "e_P"),
     ("alpha", "mean coefficient of expansion", "expansion coefficient", "α"),
     ("t_hot", "hottest metal temperature", "temperature", "t_hot"),
@@ -108,6 +110,7 @@ SYMBOLS: Final[dict[str, Symbol]] = _symbols(
     ("H", "room that the loop takes, hot, to the outside of the insulation", "length", "H"),
     ("X", "run that one loop serves, anchor to anchor", "length", "X"),
     ("delta", "movement that the leg must absorb", "movement", "δ"),
+    ("delta_s", "movement of the leg in that case", "movement", "δ_s"),
     ("delta_tot", "growth of the whole run", "movement", "Δ"),
     ("y", "resultant growth that the run must absorb", "movement", "y"),
     # material and code

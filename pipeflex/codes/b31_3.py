@@ -134,7 +134,7 @@ def editions() -> tuple[PipingCode, ...]:
         screening=(screening_value, greatest_screening_value),
         severe_cyclic=severe_cyclic,
         remarks=(_CONFIRM.format("ASME B31.3-2018"),),
-        options=FrozenMap({"ferrous_strength": 517e6, "ferrous_temperature": 371 + 273.15}),
+        options=FrozenMap({"ferrous_strength": 517.2e6, "ferrous_temperature": 371 + 273.15}),
     )
     b31_3_2022 = dataclasses.replace(
         b31_3_2018,

@@ -106,25 +106,31 @@ def _expansion(entry: str, older: str, minimum: float | None, confirmed: Iterabl
     """Growth per length from the reference temperature, continued below its first row by the older table."""
     curve = _curve(entry, confirmed)
     if curve.kind == "strain":
-        return curve
+        slope = float((curve.value[1] - curve.value[0]) / (curve.temperature[1] - curve.temperature[0]))
+        return _bounded(curve, slope, minimum)
     assert curve.reference is not None
-    first_coefficient = float(curve.value[0])
+    slope = float(curve.value[0])
     curve = curve.with_raw(kind="strain", value=curve.value * (curve.temperature - curve.reference))
-    first = float(curve.temperature[0])
     _, column, t, e, origin = _points(older, confirmed)
-    cold = t < first - 0.5
+    cold = t < curve.temperature[0] - 0.5
     if cold.any():
         shift = float(np.interp(AGREE, curve.temperature, curve.value) - np.interp(AGREE, t, e))
         source = table(older.partition(":")[0]).source_of(column)
         words = f"{source}, shifted to agree at 70 °F"
         chosen = tuple(o for o, keep in zip(origin, cold, strict=True) if keep)
-        curve = _before(curve, t[cold], e[cold] + shift, chosen, words)
-    reach = max(minimum if minimum is not None else 0.0, float(curve.temperature[0]) - _BOUND_REACH, 1.0)
-    if not cold.any() and reach < first:
-        value = curve.value[0] + first_coefficient * (reach - first)
-        words = "the first coefficient of the table, an upper bound of the contraction"
-        curve = _before(curve, np.array([reach]), np.array([value]), (curve.origin[0],), words)
-    return curve
+        return _before(curve, t[cold], e[cold] + shift, chosen, words)
+    return _bounded(curve, slope, minimum)
+
+
+def _bounded(curve: Curve, slope: float, minimum: float | None) -> Curve:
+    """A curve continued to the minimum temperature by its first coefficient, which shrinks in the cold."""
+    first = float(curve.temperature[0])
+    reach = max(minimum or 0.0, first - _BOUND_REACH)
+    if reach >= first:
+        return curve
+    value = curve.value[0] + slope * (reach - first)
+    words = "the first coefficient of the table, an upper bound of the contraction"
+    return _before(curve, np.array([reach]), np.array([value]), (curve.origin[0],), words)
 
 
 def _modulus(entry: str, confirmed: Iterable[Confirmed]) -> Curve:

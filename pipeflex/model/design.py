@@ -27,7 +27,7 @@ class Design(Record):
     code: PipingCode = sub(lambda: PipingCode)
     limits: Limits = sub(lambda: Limits, factory=Limits)
     title: Title = sub(lambda: Title, factory=Title)
-    confirmed: tuple[Confirmed, ...] = many(lambda: Confirmed)
+    confirmed: tuple[Confirmed, ...] = many(lambda: Confirmed, columnar=False)
     demo: tuple[str, ...] = names()
 
     def check(self) -> None:

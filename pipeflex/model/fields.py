@@ -166,6 +166,8 @@ class Sub:
     kind: Callable[[], type]
     many: bool = False
     optional: bool = False
+    columnar: bool = True
+    """Whether the numbers inside get a row axis in a column."""
 
     def take(self, value: Any, name: str) -> Any:
         kind = self.kind()
@@ -349,9 +351,9 @@ def sub(kind: Callable[[], type], *, optional: bool = False, factory: Any = MISS
     return _field(Sub(kind, optional=optional), None if optional else MISSING, factory)
 
 
-def many(kind: Callable[[], type], *, factory: Any = tuple) -> Any:
+def many(kind: Callable[[], type], *, factory: Any = tuple, columnar: bool = True) -> Any:
     """Declare a field that holds several records of one class."""
-    return _field(Sub(kind, many=True), MISSING, factory)
+    return _field(Sub(kind, many=True, columnar=columnar), MISSING, factory)
 
 
 def names(*, default: Any = (), label: str = "") -> Any:

@@ -225,7 +225,7 @@ class Outcome:
         """Whether the method is inside its limits for a single row."""
         return Standing.OUTSIDE if self.outside else Standing.INSIDE
 
-    def worst(self, i: Rows = None) -> Check | None:
+    def worst(self) -> Check | None:
         """The judged check of the greatest ratio of a single row; None where none is judged."""
         judged = [c for c in self.checks if c.judged]
         return max(judged, key=lambda c: c.ratio) if judged else None
@@ -233,19 +233,27 @@ class Outcome:
     @property
     def verdict(self) -> Verdict:
         """Headline of a single row: what is exceeded most decides the word."""
-        stress = self.check("range")
         worst = self.worst()
-        if worst is not None and worst.exceeded and (worst is not stress or not self.outside):
+        if worst is not None and worst.exceeded and (worst is not self.leading or not self.outside):
             room = worst.concern in (Concern.ROOM, Concern.SHOE)
             return Verdict.NO_ROOM if room else Verdict.STIFF
-        if self.outside or worst is None or not stress.judged:
+        if self.outside or worst is None or not self.leading.judged:
             return Verdict.UNKNOWN
         return Verdict.FLEXIBLE
 
+    @property
+    def leading(self) -> Check:
+        """The check for which the method exists: the stress range, or the screening value."""
+        return self.checks[0]
+
     def ratio(self) -> Rows:
-        """Greatest ratio of all judged checks, (rows,): the design is adequate up to 1."""
+        """Greatest ratio of all judged checks, (rows,)."""
         ratios = [np.where(c.judged, c.ratio, 0.0) for c in self.checks]
         return np.max(ratios, axis=0)
+
+    def adequate(self) -> Rows:
+        """Whether every judged check holds and the method is inside its limits, (rows,)."""
+        return (self.ratio() <= 1.0) & ~np.asarray(self.outside) & self.leading.judged
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)

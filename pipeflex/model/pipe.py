@@ -83,7 +83,7 @@ class Pipe(Record):
 
     outside_diameter: float = number("pipe dimension", above=0, at_most=5.0, label="Outside diameter")
     wall: float = number("pipe dimension", above=0, label="Wall")
-    materials: tuple[Material, ...] = many(lambda: Material)
+    materials: tuple[Material, ...] = many(lambda: Material, columnar=False)
     material_row: int = whole(default=0)
     size: str = text(label="Size", help="DN 200, NPS 8, 8 in, or a tube size")
     schedule: str = text(label="Wall", help="Sch 40, STD, 10S, or a tube type")

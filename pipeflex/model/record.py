@@ -90,7 +90,7 @@ class Record:
             value = getattr(self, name)
             if isinstance(spec, self._numeric):
                 changes[name] = _map_value(change, value)
-            elif isinstance(spec, Sub) and value is not None:
+            elif isinstance(spec, Sub) and spec.columnar and value is not None:
                 changes[name] = (
                     tuple(v.mapped(change) for v in value) if isinstance(value, tuple) else value.mapped(change)
                 )

@@ -1,0 +1,137 @@
+"""What several methods share: words for places, checks of room, shoes and guides, and what a method cannot see."""
+
+from typing import Any
+
+import numpy as np
+
+from pipeflex.mechanics import expansion, support
+from pipeflex.methods.basis import Basis, remark
+from pipeflex.model.design import Design
+from pipeflex.model.outcome import Check, Remark
+from pipeflex.model.words import Concern, State
+from pipeflex.trace import Calc
+
+_OPPOSITE = {
+    "east": "west", "west": "east", "north": "south", "south": "north", "up": "down", "down": "up",
+}  # fmt: skip
+
+
+class Outside:
+    """Collects the reasons why a method is outside its limits, row by row, and remarks beside them."""
+
+    def __init__(self, rows: int) -> None:
+        self.mask = np.zeros(rows, bool)
+        self.reasons: list[Remark] = []
+        self.notes: list[Remark] = []
+
+    def add(self, text: str, where: Any, place: object = None, **values: tuple[Any, str]) -> None:
+        """A reason, for the rows where it holds."""
+        if not np.any(where):
+            return
+        where = np.broadcast_to(where, self.mask.shape)
+        self.mask = self.mask | where
+        shaped = {k: (np.broadcast_to(v, self.mask.shape), kind) for k, (v, kind) in values.items()}
+        self.reasons.append(remark(text, where, True, **shaped))
+
+    def note(self, text: str, where: Any) -> None:
+        """A remark that leaves the method inside its limits."""
+        if np.any(where):
+            self.notes.append(remark(text, np.broadcast_to(where, self.mask.shape)))
+
+
+def direction_words(design: Design, d: int, back: bool = False) -> str:
+    """Word of a direction of the layout: 0 along, 1 across, 2 up."""
+    word = (design.layout.along, design.layout.across, "up")[d]
+    return word if not back else _OPPOSITE.get(word, f"opposite to {word}")
+
+
+def leg_names(design: Design) -> tuple[str, ...]:
+    """Names of the legs between ends and corners: "leg 2, A to B"."""
+    ends = design.layout.ends
+    stops = (ends[0].name or "first end", *design.layout.corner_names(), ends[1].name or "last end")
+    return tuple(f"leg {i + 1}, {a} to {b}" for i, (a, b) in enumerate(zip(stops, stops[1:], strict=False)))
+
+
+def unseen(design: Design, outside: Outside) -> None:
+    """What a quick rule cannot see of a design: said, and outside its limits where that may be unsafe."""
+    layout, duty = design.layout, design.duty
+    outside.add("Another pipe or temperature along the run", bool(layout.segments))
+    for case in duty.cases:
+        moved = [np.asarray(v) != 0 for v in (*case.first_end_movement, *case.last_end_movement)]
+        turned = [np.asarray(v) != 0 for v in (*case.first_end_rotation, *case.last_end_rotation)]
+        outside.add(f"Imposed end movement in {case.name}", np.any(moved + turned, axis=0))
+        outside.note(f"Top-to-bottom temperature difference in {case.name}: not judged.",
+                     np.asarray(case.top_to_bottom) != 0)  # fmt: skip
+    elastic = any(np.isfinite(v).any() for e in layout.ends for v in (*e.stiffness, *e.rotational_stiffness))
+    outside.note("Ends are taken as rigid: their stiffness is not judged.", elastic)
+    outside.note("Concentrated weights are not judged.", bool(layout.weights))
+    limits = any(np.isfinite(v).any() for e in layout.ends for v in (*e.force_limits, *e.moment_limits))
+    outside.note("Force and moment limits of the ends are not judged.", limits)
+    outside.note("Cold spring earns nothing in the range; its reactions are not judged.",
+                 np.asarray(duty.cold_spring) > 0)  # fmt: skip
+    outside.note("Gap and stiffness of guides are not judged.",
+                 layout.first_guide is not None or any(s.kind == "guide" for s in layout.supports))  # fmt: skip
+    outside.note("Springs are not judged.", any(s.kind == "spring" for s in layout.supports))
+    outside.note("The sustained stress of weight and pressure is not judged.", True)
+
+
+def room_check(design: Design, basis: Basis, calc: Calc) -> Check:
+    """Room of a loop, hot, to the outside of the insulation."""
+    rows = design.rows or 1
+    limit = np.broadcast_to(design.limits.room, (rows,))
+    shared = {"key": "room", "title": "Room", "concern": Concern.ROOM, "kind": "length", "states": State.HOTTEST}
+    if "leg" not in design.layout.sizes or not design.layout.shape.endswith("U"):
+        return Check(**shared, demand=np.zeros(rows), limit=limit, unjudged="room is judged for a loop")
+    hot = np.maximum(basis.case_growth.max(axis=0), 0.0)
+    calc.say("Room")
+    calc.given("e_h", hot, "installed on the coldest tie-in day, to the hottest case")
+    taken = calc(
+        support.room_taken, shown={"e": "e_h"}, l=design.layout.sizes["leg"], e=hot, D_o=basis.D_o,
+        t_ins=design.pipe.insulation_thickness, t_clad=basis.t_clad,
+    )  # fmt: skip
+    return Check(**shared, demand=taken, limit=limit)
+
+
+def shoe_check(design: Design, basis: Basis) -> Check:
+    """Movement of the run on its shoes: greatest at the corners of the two outer legs."""
+    lengths = design.layout.leg_lengths()
+    ends = lengths[[0, -1]]
+    worst = np.abs(basis.case_growth)
+    moved = worst.max(axis=0) * ends
+    place = moved.argmax(axis=0)
+    corners = design.layout.corner_names() or ("the end",)
+    return Check(
+        key="shoe", title="Movement on the shoes", concern=Concern.SHOE, kind="movement",
+        demand=moved.max(axis=0), limit=np.broadcast_to(design.limits.shoe_stop, place.shape),
+        places=(f"corner {corners[0]}", f"corner {corners[-1]}"), place=place,
+        states=f"from {State.INSTALLED}",
+    )  # fmt: skip
+
+
+def guide_check(design: Design) -> Check:
+    """The side load of the first guide, which no rule knows."""
+    rows = design.rows or 1
+    return Check(
+        key="guide", title="First guide, side", concern=Concern.REACTION, kind="force",
+        demand=np.zeros(rows), limit=np.broadcast_to(design.limits.guide_limit, (rows,)),
+        unjudged="the rule does not know it",
+    )  # fmt: skip
+
+
+def held_rigidly(design: Design, basis: Basis, calc: Calc) -> dict[str, Any]:
+    """What the straight run would feel if it could not grow at all: a comparison, never a green tick."""
+    pressure = np.stack([np.broadcast_to(c.pressure, basis.e.shape) for c in design.duty.cases])
+    worst = np.abs(basis.case_growth).argmax(axis=0)[None]
+    P = np.take_along_axis(pressure, worst, axis=0)[0]
+    e = np.take_along_axis(basis.case_growth, worst, axis=0)[0]
+    E_m = np.take_along_axis(basis.case_modulus, worst, axis=0)[0]
+    calc.say("For comparison only: the same run if it were held rigidly at both ends", heading=True)
+    calc.given("e_w", e, "case that moves the line most, from the tie-in day that makes it greatest")
+    S_H = calc(expansion.hoop_stress, P=P, D_o=basis.D_o, T_w=basis.T_w)
+    S_x = calc(expansion.held_stress, nu=basis.nu, S_H=S_H, E_m=E_m, e=e, shown={"e": "e_w"})
+    F_r = calc(expansion.held_thrust, A=basis.A, S_x=S_x)
+    S_eq = calc(expansion.equivalent_stress, S_H=S_H, S_x=S_x)
+    held = {"S_H": S_H, "S_x": S_x, "F_r": F_r, "S_eq": S_eq}
+    if (spacing := design.layout.guide_spacing) is not None:
+        held["F_cr"] = calc(expansion.column_buckling, E_m=E_m, I=basis.I, L_g=spacing)
+    return held

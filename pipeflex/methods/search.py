@@ -1,0 +1,261 @@
+"""Columns with a field varied, and what is found with them: a fit, and where the answer turns."""
+
+import math
+from collections.abc import Callable, Sequence
+from dataclasses import replace
+from typing import Any, Final
+
+import numpy as np
+
+from pipeflex.errors import Fault, InputError, MissingInput, PipeflexError
+from pipeflex.methods.solving import METHODS, method, solve
+from pipeflex.model.design import Design
+from pipeflex.model.fields import SPEC, FrozenMap, Number
+from pipeflex.model.layout import SIZE_WORDS
+from pipeflex.model.outcome import Fit, Outcome, Turn
+from pipeflex.model.record import at, put
+
+LONGEST: Final = 12.0
+"""Longest leg that a fit tries [m]."""
+LEG_STEP: Final = 0.05
+"""Step to which a fitted length is rounded up [m]; 2 in for U.S. display."""
+_GRID: Final = 65
+_ROUNDS: Final = 4
+
+
+def vary(design: Design, path: str, values: Any) -> Design:
+    """A column of designs with one number varied: a map is the column of a column.
+
+    Parameters
+    ----------
+    design : a single design, or a column of as many rows as there are values.
+    path : dotted path of a number ("layout.sizes.leg", "duty.cases.operating.temperature").
+    values : (rows,) SI numbers.
+
+    Raises
+    ------
+    InputError
+        No such field, or a value outside its range; names the rows.
+    """
+    values = np.asarray(values, float)
+    if values.ndim != 1:
+        raise InputError(Fault(path, f"values with {values.ndim} axes", allowed="one value a row"))
+    return put(design, path, values)
+
+
+def sift(
+    design: Design, answer: Callable[[Design], Outcome]
+) -> tuple[Outcome | None, np.ndarray, tuple[PipeflexError, ...]]:
+    """Answer a column without the rows at fault.
+
+    Returns
+    -------
+    outcome, rows that were kept (indices), and the errors met, at most one pass for each kind of error; None
+    where no row is left.
+    """
+    kept = np.arange(design.rows or 1)
+    errors: list[PipeflexError] = []
+    while len(kept):
+        try:
+            return answer(design), kept, tuple(errors)
+        except PipeflexError as error:
+            bad = sorted({r for fault in error.faults for r in fault.rows})
+            if not bad and len(kept) == 1:
+                bad = [0]
+            if not bad:
+                raise
+            errors.append(error)
+            good = np.setdiff1d(np.arange(len(kept)), bad)
+            kept = kept[good]
+            design = design.mapped(lambda v, good=good: v[good] if np.ndim(v) else v)
+    return None, kept, tuple(errors)
+
+
+def tried(design: Design, path: str, values: np.ndarray, key: str | None = None) -> tuple[np.ndarray, Outcome | None]:
+    """Outcome of a design for those values of one number that can be answered, and these values."""
+    values = np.asarray(values, float)
+    while len(values):
+        try:
+            column = vary(design, path, values)
+            break
+        except InputError as error:
+            bad = {r for fault in error.faults for r in fault.rows}
+            if not bad and len(values) > 1:
+                raise
+            values = np.delete(values, sorted(bad) or [0])
+    else:
+        return values, None
+    outcome, kept, _ = sift(column, lambda d: solve(d, key))
+    return values[kept], outcome
+
+
+def fit(
+    design: Design,
+    path: str = "layout.sizes.leg",
+    *,
+    target: float | None = None,
+    step: float = LEG_STEP,
+    longest: float | None = None,
+    key: str | None = None,
+) -> Fit:
+    """The first adequate value of one length past the stress peak, rounded up to a step.
+
+    Target on the stress, every other judged check at 1.00. Searches one step to the room, or 12 m.
+
+    Parameters
+    ----------
+    path : length to be fitted.
+    target : greatest ratio of the leading check; the design's own by default.
+    step : values tried are its multiples [m].
+    longest : end of the search [m].
+    key : method; the highest by default.
+    """
+    if target is None:
+        target = float(design.limits.target)
+    if not (math.isfinite(step) and step > 0):
+        raise InputError(Fault("step", step, allowed="above zero", kind="length"))
+    end = min(float(design.limits.room), LONGEST) if longest is None else longest
+    values = step * np.arange(1, int(end / step + 1e-9) + 1)
+    values, outcome = tried(design, path, values, key)
+    label = _label(path)
+    found = None if outcome is None else _first_adequate(outcome, target)
+    if found is not None:
+        value = round(float(values[found]), 9)
+        chosen = put(design, path, value)
+        return Fit(path=path, value=value, outcome=solve(chosen, key), design=chosen)
+    reason = f"No {label.lower()} up to {end:g} m holds."
+    return Fit(path=path, value=None, outcome=None, design=None, reason=reason,
+               help=_help(design, path, target, step, end, key, outcome))  # fmt: skip
+
+
+def _first_adequate(outcome: Outcome, target: float) -> int | None:
+    """Index of the first value past the peak of the leading ratio that meets the target and all other checks."""
+    leading = np.asarray(outcome.leading.ratio)
+    others = [np.where(c.judged, c.ratio, 0.0) for c in outcome.checks[1:]]
+    rest = np.max(others, axis=0) if others else np.zeros_like(leading)
+    good = (leading <= target) & (rest <= 1.0) & ~np.asarray(outcome.outside) & outcome.leading.judged
+    inside = ~np.asarray(outcome.outside)
+    peak = int(np.where(inside, leading, -1.0).argmax())
+    after = np.flatnonzero(good & (np.arange(len(good)) >= peak))
+    return int(after[0]) if len(after) else None
+
+
+def _help(
+    design: Design, path: str, target: float, step: float, end: float, key: str | None, outcome: Outcome | None
+) -> str:
+    """What would help where no value holds: more room, a guide farther off, or another limit."""
+    words = _label(path).lower()
+    free = replace_limits(design, room=math.inf)
+    values = step * np.arange(1, int(3 * LONGEST / step) + 1)
+    values, wide = tried(free, path, values, key)
+    found = None if wide is None else _first_adequate(wide, target)
+    if found is not None:
+        assert wide is not None
+        room = float(np.asarray(wide.check("room").demand)[found]) if wide.checks[1:] else math.nan
+        need = f" It needs a room of {room:.2f} m." if room > design.limits.room else ""
+        return f"A {words} of {values[found]:.2f} m would.{need}"
+    if design.layout.first_guide is not None:
+        guides = step * np.arange(1, int(LONGEST / step) + 1)
+        held, moved = tried(put(free, path, float(values[-1])) if len(values) else free, "layout.first_guide", guides, key)
+        if moved is not None and (first := _first_adequate(moved, target)) is not None:
+            return f"With the first guide at {held[first]:.2f} m or farther, a {words} of {values[-1]:.2f} m holds."
+    if outcome is None:
+        return "No value of it makes a run that can be answered."
+    last = outcome.row(-1)
+    if last.outside:
+        return "; ".join(r.words() for r in last.outside_reasons) + "."
+    worst = last.worst()
+    return f"{worst.title} stays exceeded: it does not depend enough on the {words}." if worst else ""
+
+
+def replace_limits(design: Design, **changes: Any) -> Design:
+    """A design with site limits changed."""
+    return replace(design, limits=replace(design.limits, **changes))
+
+
+def _label(path: str) -> str:
+    name = path.rpartition(".")[2]
+    return SIZE_WORDS.get(name, name.replace("_", " ").capitalize())
+
+
+def _kind(design: Design, path: str) -> str:
+    """Kind of quantity of a number at a path."""
+    parent_path, _, name = path.rpartition(".")
+    parent = at(design, parent_path) if parent_path else design
+    if isinstance(parent, FrozenMap):
+        return "length"
+    spec = next(f.metadata[SPEC] for f in parent.__dataclass_fields__.values() if f.name == name)
+    assert isinstance(spec, Number)
+    return spec.kind
+
+
+def reserve(design: Design, paths: Sequence[str] | None = None, key: str | None = None) -> tuple[Turn, ...]:
+    """Where the answer turns, one input at a time: the value nearest to the present one at which it changes.
+
+    Parameters
+    ----------
+    paths : numbers to vary; the hottest case, the leg and the run by default.
+    key : method; the one that answers the design by default.
+
+    Returns
+    -------
+    tuple of Turn
+        `turns` is not a number where the answer does not turn within the searched range.
+    """
+    outcome = solve(design, key)
+    used = method(outcome.method).key if key is None else key
+    state = bool(outcome.adequate())
+    turns = []
+    for path in paths if paths is not None else _usual(design):
+        present = at(design, path)
+        if present is None:
+            raise MissingInput(Fault(path, None, allowed="a value to start from"))
+        kind = _kind(design, path)
+        low, high = _range(design, path, float(present), kind)
+        found = _turn(design, path, float(present), low, high, state, used)
+        turns.append(Turn(path=path, label=_turn_label(path), kind=kind, present=float(present), turns=found))
+    return tuple(turns)
+
+
+def _turn_label(path: str) -> str:
+    parts = path.split(".")
+    return f"{parts[2]}, metal temperature" if parts[:2] == ["duty", "cases"] else _label(path)
+
+
+def _usual(design: Design) -> tuple[str, ...]:
+    hottest = int(design.temperatures()[:, 0].argmax())
+    sizes = tuple(f"layout.sizes.{name}" for name in ("leg", "run") if name in design.layout.sizes)
+    return (f"duty.cases.{design.duty.cases[hottest].name}.temperature", *sizes)
+
+
+def _range(design: Design, path: str, present: float, kind: str) -> tuple[float, float]:
+    if kind == "temperature":
+        curve = design.pipe.material.expansion
+        return float(design.coldest()[0]) + 1.0, float(curve.temperature[-1])
+    return present * 0.05, present * 4.0
+
+
+def _turn(design: Design, path: str, present: float, low: float, high: float, state: bool, key: str) -> float:
+    """Nearest value at which the answer turns, by columns of trial values narrowed around the first change."""
+    best = math.nan
+    for far in (low, high):
+        near, end = present, far
+        for _ in range(_ROUNDS):
+            trial = np.linspace(near, end, _GRID)[1:]
+            held, outcome = tried(design, path, trial, key)
+            if outcome is None:
+                break
+            changed = np.flatnonzero(np.asarray(outcome.adequate()) != state)
+            if not len(changed):
+                break
+            i = int(changed[0])
+            near, end = (float(held[i - 1]) if i else near), float(held[i])
+        else:
+            if math.isnan(best) or abs(end - present) < abs(best - present):
+                best = end
+    return best
+
+
+def highest() -> str:
+    """Key of the highest method."""
+    return METHODS[-1].key

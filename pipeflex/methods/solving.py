@@ -1,0 +1,166 @@
+"""The methods in order of rising fidelity, and the ways to ask them."""
+
+from collections.abc import Callable
+from dataclasses import dataclass, replace
+from typing import Any, Final
+
+import numpy as np
+
+from pipeflex.errors import Fault, InputError, PipeflexError, ScopeError
+from pipeflex.mechanics import cantilever, expansion
+from pipeflex.methods import guided_cantilever, screening
+from pipeflex.methods.basis import Basis, basis
+from pipeflex.model.design import Design
+from pipeflex.model.outcome import Ladder, Outcome, Rung
+from pipeflex.model.words import Standing
+from pipeflex.trace import PLAIN, Calc, Trace
+
+
+@dataclass(frozen=True, slots=True)
+class Method:
+    """One method: key, label, rank among the methods, and how a column is answered by it."""
+
+    key: str
+    title: str
+    rank: int
+    run: Callable[[Design, Basis, Calc], Outcome]
+
+
+METHODS: Final[tuple[Method, ...]] = (
+    Method(screening.KEY, screening.TITLE, 1, screening.run),
+    Method(guided_cantilever.KEY, guided_cantilever.TITLE, 2, guided_cantilever.run),
+)
+"""All methods, rule to beam."""
+
+
+def method(key: str) -> Method:
+    """The method of that key.
+
+    Raises
+    ------
+    InputError
+        No such method; the known ones are named.
+    """
+    for one in METHODS:
+        if one.key == key:
+            return one
+    raise InputError(Fault("method", key, allowed="a method", near=tuple(m.key for m in METHODS)))
+
+
+def solve(design: Design, key: str | None = None) -> Outcome:
+    """Answer a design, or a column of designs.
+
+    Parameters
+    ----------
+    design : one line, or a column of lines of one skeleton.
+    key : method. Without one, a single design is answered by the highest method that is inside its limits (or
+        the highest that can answer at all, if none is inside), a column by the highest method of all.
+
+    Returns
+    -------
+    Outcome
+        Floats, with its steps, for a single design; arrays (..., rows) without steps for a column.
+
+    Raises
+    ------
+    InputError, TableError
+        An input at fault; the error names its field, and its rows in a column.
+    ScopeError
+        No method can answer.
+    """
+    if design.rows is not None:
+        return _column(design, method(key) if key else METHODS[-1])
+    if key is not None:
+        return _single(design, method(key))
+    first: Outcome | None = None
+    refused: list[PipeflexError] = []
+    for one in reversed(METHODS):
+        try:
+            outcome = _single(design, one)
+        except ScopeError as error:
+            refused.append(error)
+            continue
+        if not outcome.outside:
+            return outcome
+        first = first or outcome
+    if first is None:
+        raise refused[0]
+    return first
+
+
+def _column(design: Design, one: Method) -> Outcome:
+    column = design.column()
+    return one.run(column, basis(column, PLAIN), PLAIN)
+
+
+def _single(design: Design, one: Method) -> Outcome:
+    column, trace = design.column(), Trace()
+    outcome = one.run(column, basis(column, trace), trace)
+    return replace(outcome.row(0), design=design, steps=tuple(trace.steps))
+
+
+def ladder(design: Design) -> Ladder:
+    """All methods for one design, rule to beam, with the developed-length rule as a marked comparison."""
+    rungs, best, answers = [], None, []
+    for one in METHODS:
+        try:
+            outcome = _single(design, one)
+        except ScopeError as error:
+            nothing = float("nan")
+            rungs.append(
+                Rung(key=one.key, title=one.title, standing=Standing.OUTSIDE, reason=error.text(), ratio=nothing,
+                     leg=nothing, anchor=nothing)
+            )  # fmt: skip
+            continue
+        answers.append(outcome)
+        rungs.append(_rung(one, outcome))
+        if not outcome.outside:
+            best = outcome
+    if best is None and answers:
+        best = answers[-1]
+    comparison = _developed(design)
+    return Ladder(design=design, rungs=(*rungs, *comparison), best=best)
+
+
+def _rung(one: Method, outcome: Outcome) -> Rung:
+    reasons = "; ".join(r.words() for r in outcome.outside_reasons)
+    anchors = [abs(v.greatest()) for v in outcome.loads if v.kind == "force"]
+    return Rung(
+        key=one.key, title=one.title, standing=outcome.standing, reason=reasons,
+        ratio=float(outcome.leading.ratio), leg=float(outcome.results.get("l_req", np.nan)),
+        anchor=max(anchors, default=float("nan")),
+    )  # fmt: skip
+
+
+def _developed(design: Design) -> tuple[Rung, ...]:
+    """The handbooks' developed-length rule for a loop, as a comparison without rank."""
+    layout = design.layout
+    if layout.shape != "U":
+        return ()
+    column = design.column()
+    start = basis(column, PLAIN)
+    S_rule = design.duty.rule_stress or float(start.S_A[0])
+    sizes = column.layout.full_sizes()
+    growth = expansion.free_growth(start.e, sizes["run"])
+    needed = float(cantilever.developed_length(start.E_a, start.D_o, growth, S_rule)[0])
+    present = float(cantilever.loop_developed(sizes["leg"], sizes["width"])[0])
+    leg = (needed - float(sizes["width"][0])) / 2
+    whose = "the stress entered" if design.duty.rule_stress else "S_A"
+    return (
+        Rung(
+            key="developed_length", title=f"developed-length rule at {whose}", standing=Standing.OUTSIDE,
+            reason="for comparison: a rule of copper and heating handbooks, safe only at their low stress",
+            ratio=(needed / present) ** 2, leg=max(leg, 0.0), anchor=float("nan"), reference=True,
+        ),
+    )  # fmt: skip
+
+
+def literature(outcome: Outcome) -> tuple[str, ...]:
+    """Published sources that the steps of an outcome cite, in order."""
+    refs: dict[str, Any] = {}
+    for step in outcome.steps:
+        formula = getattr(step, "formula", None) or getattr(step, "table", None)
+        ref = getattr(formula, "ref", None) or getattr(step, "ref", None)
+        if ref:
+            refs[ref] = None
+    return tuple(refs)
