@@ -67,10 +67,9 @@ def values_at(pipe: Pipe, curve_of: CurveOf, temperature: Any, field: str) -> np
         curve = curve_of(one)
         t = temperature[..., rows]
         out[..., rows] = np.interp(t, curve.temperature, curve.value)
-        bad = (t < curve.temperature[0]) | (t > curve.temperature[-1])
-        outside[..., rows] = bad
-        if first is None and bad.any():
-            first = curve
+        if t.min() < curve.temperature[0] or t.max() > curve.temperature[-1]:
+            outside[..., rows] = (t < curve.temperature[0]) | (t > curve.temperature[-1])
+            first = first or curve
     if first is not None:
         faulty = outside if outside.ndim <= 1 else outside.any(axis=0)
         given = temperature if outside.ndim <= 1 else temperature[outside.argmax(axis=0), np.arange(faulty.size)]

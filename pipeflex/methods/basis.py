@@ -1,5 +1,6 @@
 """What every method starts from, worked out once: section, weight, growth, moduli, allowable range."""
 
+import re
 from collections.abc import Callable
 from dataclasses import dataclass, field
 from typing import Any, Final
@@ -48,18 +49,20 @@ class Basis:
     """Modulus of each case, (cases, rows)."""
     e_P: Rows
     """Pressure elongation of each case that is counted, (cases, rows)."""
+    case_growth: Rows
+    """Growth per length of each case from the tie-in day that makes it greatest, (cases, rows)."""
     S_c: Rows
     S_h: Rows
     f: Rows
     S_A: Rows
+    vectors: Rows
+    """Legs from corner to corner, (3, legs, rows)."""
+    lengths: Rows
+    """Their lengths, (legs, rows)."""
+    apart: Rows
+    """From the first end to the last, (3, rows)."""
     pool: dict[str, Any]
     remarks: list[Remark] = field(default_factory=list)
-
-    @property
-    def case_growth(self) -> Rows:
-        """Growth per length of each case from the tie-in day that makes it greatest, (cases, rows)."""
-        growth = self.case_strain[:, None] + self.e_P[:, None] - self.install_strain[None]
-        return np.take_along_axis(growth, np.abs(growth).argmax(axis=1)[:, None], axis=1)[:, 0]
 
 
 def remark(text: str, rows: Any = True, serious: bool = False, /, **values: tuple[Any, str]) -> Remark:
@@ -87,6 +90,8 @@ def basis(design: Design, calc: Calc) -> Basis:
     calc.say("Allowable range", heading=True)
     pool: dict[str, Any] = {**geometry, **growth}
     _allowable(design, pool, calc, remarks)
+    vectors = design.layout.leg_vectors()
+    pool |= {"vectors": vectors, "lengths": np.sqrt((vectors**2).sum(axis=0)), "apart": vectors.sum(axis=1)}
     taken = {name: pool[name] for name in Basis.__dataclass_fields__ if name in pool}
     made = Basis(**taken, pool=pool, remarks=remarks)
     for r in made.remarks:
@@ -168,9 +173,12 @@ def _growth(design: Design, g: dict[str, Any], calc: Calc, remarks: list[Remark]
         if calc.tracing and duty.pressure_elongation:
             calc.say(remarks[-1].row(0).words())
     _remark_cold(design, t_cold, remarks)
+    from_low, from_high = (case_strain + e_P - tie for tie in install_strain)
+    case_growth = np.where(np.abs(from_low) >= np.abs(from_high), from_low, from_high)
     return {
         "nu": nu, "E_a": E_a, "t_hot": t_hot, "t_cold": t_cold, "e": e, "e_P": e_P,
         "case_strain": case_strain, "install_strain": install_strain, "case_modulus": case_modulus,
+        "case_growth": case_growth,
     }  # fmt: skip
 
 
@@ -229,13 +237,21 @@ def _remark_stress(design: Design, one: Material, rows: Any, remarks: list[Remar
     assert curve is not None
     mask = np.zeros(design.rows or 1, bool)
     mask[rows] = True
-    if curve.table != code.stress_tables[0] or curve.edition:
+    if curve.table != code.stress_tables[0] or not _covers(curve.edition, code.edition):
         edition = curve.edition or curve.title
         remarks.append(remark(f"Allowable stress of {one.key}: {edition}, the nearest held for {code.key}.", mask))
     if pipe.heated_joint and one.joined_stresses:
         remarks.append(
             remark(f"Joints are {pipe.joint}: {one.key} takes the allowable stress of {one.joined_as}.", mask)
         )
+
+
+def _covers(editions: str, edition: str) -> bool:
+    """Whether "2012 to 2020" names the edition "2018"; no years cover all."""
+    years = [int(y) for y in re.findall(r"\b(?:19|20)\d\d\b", editions)]
+    if not years:
+        return True
+    return (min(years) if len(years) > 1 else 0) <= int(edition) <= max(years)
 
 
 def table_values(design: Design) -> tuple[tuple[Curve, int], ...]:

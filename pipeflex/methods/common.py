@@ -94,8 +94,7 @@ def room_check(design: Design, basis: Basis, calc: Calc) -> Check:
 
 def shoe_check(design: Design, basis: Basis) -> Check:
     """Movement of the run on its shoes: greatest at the corners of the two outer legs."""
-    lengths = design.layout.leg_lengths()
-    ends = lengths[[0, -1]]
+    ends = basis.lengths[[0, -1]]
     worst = np.abs(basis.case_growth)
     moved = worst.max(axis=0) * ends
     place = moved.argmax(axis=0)

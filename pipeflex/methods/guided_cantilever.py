@@ -49,7 +49,7 @@ class Legs:
     """Sum of l^3 of the legs square to each direction, (3, rows) [m3]"""
 
 
-def legs_of(design: Design) -> Legs:
+def legs_of(design: Design, basis: Basis) -> Legs:
     """The legs of a right-angled run.
 
     Raises
@@ -57,15 +57,13 @@ def legs_of(design: Design) -> Legs:
     ScopeError
         Legs that are not square to each other, or a run without a leg that could take the growth.
     """
-    vectors = design.layout.leg_vectors()
-    lengths = np.sqrt((vectors**2).sum(axis=0))
+    vectors, lengths, apart = basis.vectors, basis.lengths, basis.apart
     axis = np.abs(vectors[:, :, 0]).argmax(axis=0)
     along = np.abs(np.take_along_axis(vectors, axis[None, :, None], axis=0)[0])
     skew = along < lengths * (1 - _SQUARE)
     if skew.any():
         leg = int(skew.any(axis=1).argmax()) + 1
         raise ScopeError(Fault(f"layout, leg {leg}", "a leg at a slant", allowed="legs square to each other"))
-    apart = vectors.sum(axis=1)
     moves = (np.abs(apart) > _SQUARE).any(axis=1)
     square = moves[:, None] & (axis[None] != np.arange(3)[:, None])
     way, leg = np.nonzero(square)
@@ -97,7 +95,7 @@ def limits(design: Design, basis: Basis) -> Outside:
 def _near_guide(design: Design, basis: Basis, outside: Outside) -> None:
     """An L or Z whose first guide stands too near is outside: the stub between corner and guide is never seen."""
     layout = design.layout
-    lengths = layout.leg_lengths()
+    lengths = basis.lengths
     ends = {1: 0, layout.leg_count: layout.leg_count - 1}
     for leg, i in ends.items():
         square = lengths[1 if leg == 1 else layout.leg_count - 2]
@@ -115,7 +113,7 @@ def _near_guide(design: Design, basis: Basis, outside: Outside) -> None:
 
 def run(design: Design, basis: Basis, calc: Calc) -> Outcome:
     """Answer of the rule for a column."""
-    legs = legs_of(design)
+    legs = legs_of(design, basis)
     names = leg_names(design)
     outside = limits(design, basis)
     calc.say("Guided cantilever", heading=True)
@@ -238,7 +236,7 @@ def _anchor_check(design: Design, end: int, load: Load) -> Check:
 
 def _friction(design: Design, basis: Basis, calc: Calc) -> np.ndarray:
     """Friction that reaches each end: of its own side only, to the middle of what bends, (2, rows) [N]."""
-    lengths = design.layout.leg_lengths()
+    lengths = basis.lengths
     between = lengths[1:-1].sum(axis=0) if len(lengths) > 2 else None
     side = [lengths[0], lengths[-1]]
     if between is not None:
@@ -304,7 +302,7 @@ def _movements(design: Design, basis: Basis, legs: Legs) -> tuple[Movement, ...]
     found = []
     for leg, corner, sign in ((0, corners[0], 1.0), (len(legs.lengths) - 1, corners[-1], -1.0)):
         d = int(legs.axis[leg])
-        way = sign * np.sign(design.layout.leg_vectors()[d, leg])
+        way = sign * np.sign(basis.vectors[d, leg])
         found.append(
             Movement(point=f"corner {corner}", name="along the run", positive=direction_words(design, d),
                      negative=direction_words(design, d, back=True), states=states,

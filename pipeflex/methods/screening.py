@@ -28,8 +28,8 @@ def limits(design: Design, basis: Basis) -> Outside:
     outside.add("Restraint between the anchors: the run is guided", guides or stops)
     outside.note("Rests between the anchors hold the line by friction: the rule knows none.",
                  layout.rest_spacing is not None or any(s.kind == "rest" for s in layout.supports))  # fmt: skip
-    lengths = layout.leg_lengths()
-    apart = np.sqrt((layout.leg_vectors().sum(axis=1) ** 2).sum(axis=0))
+    lengths = basis.lengths
+    apart = np.sqrt((basis.apart**2).sum(axis=0))
     if layout.shape in ("U", "raised U"):
         full = layout.full_sizes()
         sides = np.abs(2 * full["before"] + full["width"] - full["run"]) > 1e-9 * np.asarray(full["run"])
@@ -43,9 +43,8 @@ def limits(design: Design, basis: Basis) -> Outside:
 def run(design: Design, basis: Basis, calc: Calc) -> Outcome:
     """Answer of the rule for a column. It says nothing of reactions."""
     clauses: tuple[Rule, ...] = design.code.screening
-    lengths = design.layout.leg_lengths()
-    L_dev = lengths.sum(axis=0)
-    U_a = np.sqrt((design.layout.leg_vectors().sum(axis=1) ** 2).sum(axis=0))
+    L_dev = basis.lengths.sum(axis=0)
+    U_a = np.sqrt((basis.apart**2).sum(axis=0))
     if not clauses:
         raise ScopeError(Fault("code.key", design.code.key, allowed="a code with a screening rule"))
     straight = L_dev - U_a <= 1e-9 * L_dev

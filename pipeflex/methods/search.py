@@ -67,7 +67,7 @@ def sift(
             errors.append(error)
             good = np.setdiff1d(np.arange(len(kept)), bad)
             kept = kept[good]
-            design = design.mapped(lambda v, good=good: v[good] if np.ndim(v) else v)
+            design = design.taken(good)
     return None, kept, tuple(errors)
 
 

@@ -96,7 +96,7 @@ def _column(design: Design, one: Method) -> Outcome:
 def _single(design: Design, one: Method) -> Outcome:
     column, trace = design.column(), Trace()
     outcome = one.run(column, basis(column, trace), trace)
-    return replace(outcome.row(0), design=design, steps=tuple(trace.steps))
+    return replace(outcome.row(0, design), steps=tuple(trace.steps))
 
 
 def ladder(design: Design) -> Ladder:

@@ -1,6 +1,7 @@
 """The design: the whole input of one line, or of a column of lines of one skeleton."""
 
 import hashlib
+from dataclasses import field
 from typing import Any, Self
 
 import numpy as np
@@ -29,9 +30,11 @@ class Design(Record):
     title: Title = sub(lambda: Title, factory=Title)
     confirmed: tuple[Confirmed, ...] = many(lambda: Confirmed, columnar=False)
     demo: tuple[str, ...] = names()
+    rows: int | None = field(init=False, default=None, repr=False)
+    """Rows of a column; None for a single design."""
 
     def check(self) -> None:
-        rows_of(self)
+        object.__setattr__(self, "rows", rows_of(self))
         hottest, coldest = self.hottest(), self.coldest()
         refuse(
             InputError,
@@ -43,11 +46,6 @@ class Design(Record):
                 ),
             ),
         )  # fmt: skip
-
-    @property
-    def rows(self) -> int | None:
-        """Rows of a column; None for a single design."""
-        return rows_of(self)
 
     def temperatures(self) -> np.ndarray:
         """Metal temperatures of the cases, (cases, rows) [K]."""
@@ -67,9 +65,11 @@ class Design(Record):
 
         def widen(value: Any) -> Any:
             array = np.asarray(value)
-            return array if array.ndim else np.broadcast_to(array, (rows,))
+            if array.ndim:
+                return array
+            return array.reshape(1) if rows == 1 else np.broadcast_to(array, (rows,))
 
-        return self.mapped(widen)
+        return self.mapped(widen).with_raw(rows=rows)
 
     def row(self, i: int) -> Self:
         """One row of a column as a single design."""
@@ -79,7 +79,11 @@ class Design(Record):
         def pick(value: Any) -> Any:
             return value[i].item() if np.ndim(value) else value
 
-        return self.mapped(pick)
+        return self.mapped(pick).with_raw(rows=None)
+
+    def taken(self, rows: np.ndarray) -> Self:
+        """The given rows of a column, in that order."""
+        return self.mapped(lambda v: v[rows] if np.ndim(v) else v).with_raw(rows=len(rows))
 
     @property
     def fingerprint(self) -> str:

@@ -196,15 +196,15 @@ class Outcome:
     shapes: tuple[Shape, ...] = ()
     along: tuple[Along, ...] = ()
 
-    def row(self, i: int) -> Self:
-        """One row as floats; remarks that do not concern it are left out."""
+    def row(self, i: int, design: Design | None = None) -> Self:
+        """One row as floats; remarks that do not concern it are left out. `design` : that row, if at hand."""
 
         def concerned(remarks: tuple[Remark, ...]) -> tuple[Remark, ...]:
             return tuple(r.row(i) for r in remarks if np.asarray(r.rows)[i])
 
         return replace(
             self,
-            design=self.design.row(i),
+            design=design or self.design.row(i),
             checks=tuple(c.row(i) for c in self.checks),
             loads=tuple(v.row(i) for v in self.loads),
             movements=tuple(v.row(i) for v in self.movements),

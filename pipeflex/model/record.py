@@ -2,6 +2,7 @@
 
 from collections.abc import Callable, Iterator
 from dataclasses import dataclass, fields
+from functools import cache
 from typing import Any, ClassVar, Self, TypeVar, dataclass_transform
 
 import numpy as np
@@ -52,9 +53,9 @@ class Record:
         """Conditions between fields; a record that has some overrides this."""
 
     @classmethod
-    def specs(cls) -> Iterator[tuple[str, Any]]:
+    def specs(cls) -> tuple[tuple[str, Any], ...]:
         """Names of the fields and their declarations."""
-        return ((f.name, f.metadata[SPEC]) for f in fields(cls) if SPEC in f.metadata)  # type: ignore[arg-type]
+        return _specs(cls)
 
     @classmethod
     def default(cls, name: str) -> Any:
@@ -79,8 +80,8 @@ class Record:
     def with_raw(self, **changes: Any) -> Self:
         """A copy with fields changed and nothing validated: for numbers that were validated before."""
         new = object.__new__(type(self))
-        for f in fields(self):  # type: ignore[arg-type]
-            object.__setattr__(new, f.name, changes.get(f.name, getattr(self, f.name)))
+        for name in _field_names(type(self)):
+            object.__setattr__(new, name, changes[name] if name in changes else getattr(self, name))
         return new
 
     def mapped(self, change: Callable[[Any], Any]) -> Self:
@@ -101,6 +102,16 @@ class Record:
         found: list[Any] = []
         self.mapped(lambda v: found.append(v) or v)  # type: ignore[func-returns-value]
         return iter(found)
+
+
+@cache
+def _specs(cls: type) -> tuple[tuple[str, Any], ...]:
+    return tuple((f.name, f.metadata[SPEC]) for f in fields(cls) if SPEC in f.metadata)
+
+
+@cache
+def _field_names(cls: type) -> tuple[str, ...]:
+    return tuple(f.name for f in fields(cls))
 
 
 def _sub_content(value: Any) -> Any:
@@ -185,7 +196,7 @@ def _put(value: Any, parts: list[str], new: Any, path: str) -> Any:
     if isinstance(value, tuple):
         i = _index(value, head, path)
         return (*value[:i], child, *value[i + 1 :])
-    values = {f.name: getattr(value, f.name) for f in fields(value)}
+    values = {name: getattr(value, name) for name, _ in value.specs()}
     return type(value)(**{**values, head: child})
 
 
