@@ -142,7 +142,7 @@ def refuse(error: type[PipeflexError], *checks: Bad) -> None:
             bad = np.asarray(bad)
             rows = tuple(int(r) for r in np.flatnonzero(bad))
             given = fault.given
-            if np.ndim(given):
+            if isinstance(given, np.ndarray) and given.ndim:
                 given = np.broadcast_to(np.asarray(given), bad.shape).ravel()[rows[0]]
             fault = replace(fault, given=given, rows=rows if bad.size > 1 else ())
         faults.append(fault)

@@ -132,7 +132,7 @@ def span(low: float, high: float, kind: str, units: UnitSystem = "metric") -> st
 
 def percent(ratio: float, limit: float = 1.0) -> str:
     """A ratio as a percentage whose digits are added until it stands on the same side of the limit."""
-    for decimals in range(0, 12):
+    for decimals in range(12):
         body = f"{100 * ratio:.{decimals}f}"
         printed = float(body) / 100
         if (printed > limit) == (ratio > limit) and (printed < limit) == (ratio < limit):

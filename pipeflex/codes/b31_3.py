@@ -27,7 +27,7 @@ SCREENING_CONSTANT: Final = 0.208
 
 
 @formula("f = max(f_min, min(f_m, 6.0*N**-0.2))", ref=f"{_2018} eq. (1c)")
-def range_factor_2018(N: Any, f_m: Any, f_min: Any = LEAST_F) -> Any:  # noqa: N803
+def range_factor_2018(N: Any, f_m: Any, f_min: Any = LEAST_F) -> Any:
     """Stress range factor, editions 2004 to 2020.
 
     N : equivalent full cycles, at least 1. f_m : 1.0, or 1.2 where para. 302.3.5(d) permits.
@@ -36,43 +36,43 @@ def range_factor_2018(N: Any, f_m: Any, f_min: Any = LEAST_F) -> Any:  # noqa: N
 
 
 @formula("f = max(f_min, min(f_m, 20*N**-0.333))", ref=f"{_2022} eq. (1c), the exponent as printed")
-def range_factor_2022(N: Any, f_m: Any, f_min: Any = LEAST_F) -> Any:  # noqa: N803
+def range_factor_2022(N: Any, f_m: Any, f_min: Any = LEAST_F) -> Any:
     """Stress range factor of the 2022 edition."""
     return np.maximum(f_min, np.minimum(f_m, 20 * np.asarray(N) ** -0.333))
 
 
 @formula("S_c_used = min(S_c, S_cap)", ref=f"{_2018}: at most 138 MPa (20 ksi) where f exceeds 1")
-def cold_allowable_capped(S_c: Any, S_cap: Any = S_CAP) -> Any:  # noqa: N803
+def cold_allowable_capped(S_c: Any, S_cap: Any = S_CAP) -> Any:
     """S_c [Pa] as used where f exceeds 1."""
     return np.minimum(S_c, S_cap)
 
 
 @formula("S_c_used = S_c", ref=_2018)
-def cold_allowable(S_c: Any) -> Any:  # noqa: N803
+def cold_allowable(S_c: Any) -> Any:
     """S_c [Pa] as used where f does not exceed 1."""
     return S_c
 
 
 @formula("S_h_used = min(S_h, S_cap)", ref=f"{_2018}: at most 138 MPa (20 ksi) where f exceeds 1")
-def hot_allowable_capped(S_h: Any, S_cap: Any = S_CAP) -> Any:  # noqa: N803
+def hot_allowable_capped(S_h: Any, S_cap: Any = S_CAP) -> Any:
     """S_h [Pa] as used where f exceeds 1."""
     return np.minimum(S_h, S_cap)
 
 
 @formula("S_h_used = S_h", ref=_2018)
-def hot_allowable(S_h: Any) -> Any:  # noqa: N803
+def hot_allowable(S_h: Any) -> Any:
     """S_h [Pa] as used where f does not exceed 1."""
     return S_h
 
 
 @formula("S_A = f*(1.25*S_c_used + 0.25*S_h_used)", ref=f"{_2018} eq. (1a)")
-def allowable_range(f: Any, S_c_used: Any, S_h_used: Any) -> Any:  # noqa: N803
+def allowable_range(f: Any, S_c_used: Any, S_h_used: Any) -> Any:
     """Allowable displacement stress range [Pa]."""
     return f * (1.25 * S_c_used + 0.25 * S_h_used)
 
 
 @formula("S_A = f*(1.25*(S_c_used + S_h_used) - S_L)", ref=f"{_2018} eq. (1b)")
-def range_with_unused_sustained(f: Any, S_c_used: Any, S_h_used: Any, S_L: Any) -> Any:  # noqa: N803
+def range_with_unused_sustained(f: Any, S_c_used: Any, S_h_used: Any, S_L: Any) -> Any:
     """Allowable displacement stress range [Pa] with the unused sustained stress added.
 
     S_L [Pa] : sustained stress at the same point in the worst support state, not above S_h.
@@ -81,19 +81,19 @@ def range_with_unused_sustained(f: Any, S_c_used: Any, S_h_used: Any, S_L: Any) 
 
 
 @formula("N = N_E + r_i**5*N_i", ref="ASME B31.3-2018 para. 302.3.5(d) eq. (1d)")
-def equivalent_cycles_2018(N_E: Any, r_i: Any, N_i: Any) -> Any:  # noqa: N803
+def equivalent_cycles_2018(N_E: Any, r_i: Any, N_i: Any) -> Any:
     """Equivalent full cycles of N_E full ones and N_i of the part r_i of the range, editions 2004 to 2020."""
     return N_E + r_i**5 * N_i
 
 
 @formula("N = N_E + r_i**3*N_i", ref="ASME B31.3-2022 para. 302.3.5(d) eq. (1d)")
-def equivalent_cycles_2022(N_E: Any, r_i: Any, N_i: Any) -> Any:  # noqa: N803
+def equivalent_cycles_2022(N_E: Any, r_i: Any, N_i: Any) -> Any:
     """Equivalent full cycles by the slope of the 2022 edition."""
     return N_E + r_i**3 * N_i
 
 
 @formula("q = D_o*y/(L_dev - U_a)**2", ref="ASME B31.3-2018 para. 319.4.1(c) eq. (16)")
-def screening_value(D_o: Any, y: Any, L_dev: Any, U_a: Any) -> Any:  # noqa: N803
+def screening_value(D_o: Any, y: Any, L_dev: Any, U_a: Any) -> Any:
     """Screening value of one run of one size between two anchors, nothing between them.
 
     y : resultant growth to be absorbed [m]. L_dev : developed length [m]. U_a : distance of the anchors [m].
@@ -102,12 +102,12 @@ def screening_value(D_o: Any, y: Any, L_dev: Any, U_a: Any) -> Any:  # noqa: N80
 
 
 @formula("K_1 = K_code*S_A/E_a", ref="ASME B31.3-2018 para. 319.4.1(c): 208 000 S_A/E_a (mm/m)2")
-def greatest_screening_value(S_A: Any, E_a: Any, K_code: Any = SCREENING_CONSTANT) -> Any:  # noqa: N803
+def greatest_screening_value(S_A: Any, E_a: Any, K_code: Any = SCREENING_CONSTANT) -> Any:
     """Greatest screening value at which no formal analysis is asked."""
     return K_code * S_A / E_a
 
 
-def severe_cyclic(S_E: Any, S_A: Any, N: Any) -> Any:  # noqa: N803
+def severe_cyclic(S_E: Any, S_A: Any, N: Any) -> Any:
     """Whether cyclic conditions are severe: S_E above 0.8 S_A and N above 7000 (ASME B31.3-2018 para. 300.2)."""
     return (S_E > 0.8 * S_A) & (np.asarray(N) > 7000)
 

@@ -48,9 +48,7 @@ def _origins(source: Table, column: str, held: np.ndarray, said: dict[float, Con
     return tuple(o for o, keep in zip(each, held, strict=True) if keep)
 
 
-def _points(
-    entry: str, confirmed: Iterable[Confirmed]
-) -> tuple[Table, str, np.ndarray, np.ndarray, tuple[str, ...]]:
+def _points(entry: str, confirmed: Iterable[Confirmed]) -> tuple[Table, str, np.ndarray, np.ndarray, tuple[str, ...]]:
     """Temperatures, values and origins of "topic/table:column", confirmed values put in."""
     id_, _, column = entry.partition(":")
     source = table(id_)

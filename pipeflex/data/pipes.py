@@ -150,7 +150,7 @@ def pipe(
     >>> pipe("A106-B", "DN 200", "40").outside_diameter  # 8.625 in, ASME B36.10M
     0.219075
     """
-    made = {"materials": (material(material_key, expansion, confirmed),)}
+    made: dict[str, Any] = {"materials": (material(material_key, expansion, confirmed),)}
     if "outside_diameter" in fields and "wall" in fields:
         return Pipe(**made, size=size, schedule=schedule, **fields)
     found = dimensions(size, schedule)

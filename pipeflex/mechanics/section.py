@@ -32,7 +32,7 @@ def second_moment(D_o: Any, D_i: Any) -> Any:
 
 
 @formula("Z = 2*I/D_o", ref=_GEOMETRY)
-def section_modulus(I: Any, D_o: Any) -> Any:  # noqa: E741, N803
+def section_modulus(I: Any, D_o: Any) -> Any:
     """Section modulus [m3]."""
     return 2 * I / D_o
 

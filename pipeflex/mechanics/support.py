@@ -9,19 +9,19 @@ from pipeflex.trace import formula
 
 
 @formula("F_mu = mu*w*L_mu", ref="Coulomb friction of the weight on its supports")
-def friction_force(mu: Any, w: Any, L_mu: Any) -> Any:  # noqa: N803
+def friction_force(mu: Any, w: Any, L_mu: Any) -> Any:
     """Friction [N] of a length L_mu [m] of line that slides on its supports."""
     return mu * w * L_mu
 
 
 @formula("F_a = F_th + F_mu", ref="equilibrium: friction opposes the movement, the anchor takes both")
-def anchor_force(F_th: Any, F_mu: Any) -> Any:  # noqa: N803
+def anchor_force(F_th: Any, F_mu: Any) -> Any:
     """Force [N] of the pipe on the anchor."""
     return F_th + F_mu
 
 
 @formula("F_min = max(F_least, 0.1*w*L)", ref="common practice: 2 kN, or 10 % of the weight of the line")
-def least_anchor_load(F_least: Any, w: Any, L: Any) -> Any:  # noqa: N803
+def least_anchor_load(F_least: Any, w: Any, L: Any) -> Any:
     """Least design load [N] of an anchor of a line of weight w [N/m] and length L [m]."""
     return np.maximum(F_least, 0.1 * w * L)
 
@@ -30,7 +30,7 @@ def least_anchor_load(F_least: Any, w: Any, L: Any) -> Any:  # noqa: N803
     "H = l*(1 + e) + D_o/2 + t_ins + t_clad",
     ref="geometry: from the line's centre to the outside of the insulation",
 )
-def room_taken(l: Any, e: Any, D_o: Any, t_ins: Any, t_clad: Any) -> Any:  # noqa: E741, N803
+def room_taken(l: Any, e: Any, D_o: Any, t_ins: Any, t_clad: Any) -> Any:
     """How far [m] a leg of length l [m] reaches beside the line's centre, hot and insulated."""
     return l * (1 + e) + D_o / 2 + t_ins + t_clad
 

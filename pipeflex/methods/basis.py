@@ -30,7 +30,7 @@ class Basis:
     T_w: Rows
     D_i: Rows
     A: Rows
-    I: Rows  # noqa: E741
+    I: Rows
     Z: Rows
     w: Rows
     """Weight per length with contents."""
@@ -101,7 +101,8 @@ def basis(design: Design, calc: Calc) -> Basis:
 
 def _per_row(pipe: Pipe, of: Callable[[Material], float]) -> Rows:
     values = np.array([of(m) for m in pipe.materials])
-    return values[np.asarray(pipe.material_row)]
+    taken: Rows = values[np.asarray(pipe.material_row)]
+    return taken
 
 
 def _section(pipe: Pipe, calc: Calc) -> dict[str, Any]:
@@ -110,7 +111,7 @@ def _section(pipe: Pipe, calc: Calc) -> dict[str, Any]:
     T_w = calc.given("T_w", pipe.wall, size)
     D_i = calc(section.inside_diameter, D_o=D_o, T_w=T_w)
     A = calc(section.metal_area, D_o=D_o, D_i=D_i)
-    I = calc(section.second_moment, D_o=D_o, D_i=D_i)  # noqa: E741
+    I = calc(section.second_moment, D_o=D_o, D_i=D_i)
     Z = calc(section.section_modulus, I=I, D_o=D_o)
     t_clad = np.where(np.asarray(pipe.insulation_thickness) > 0, pipe.cladding_thickness, 0.0)
     stated = pipe.materials[0].stated
@@ -145,9 +146,7 @@ def _growth(design: Design, g: dict[str, Any], calc: Calc, remarks: list[Remark]
         return np.stack([lookup.values_at(pipe, lookup.expansion, np.broadcast_to(t, shape), f) for t, f in which])
 
     case_strain, install_strain = strains(places), strains(ties)
-    case_modulus = np.stack(
-        [lookup.values_at(pipe, lookup.modulus, np.broadcast_to(t, shape), f) for t, f in places]
-    )
+    case_modulus = np.stack([lookup.values_at(pipe, lookup.modulus, np.broadcast_to(t, shape), f) for t, f in places])
     t_hot, t_cold = design.hottest(), design.coldest()
     both = np.concatenate([case_strain, install_strain])
     expand = lookup.expansion

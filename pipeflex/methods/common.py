@@ -79,7 +79,9 @@ def room_check(design: Design, basis: Basis, calc: Calc) -> Check:
     """Room of a loop, hot, to the outside of the insulation."""
     rows = design.rows or 1
     limit = np.broadcast_to(design.limits.room, (rows,))
-    shared = {"key": "room", "title": "Room", "concern": Concern.ROOM, "kind": "length", "states": State.HOTTEST}
+    shared: dict[str, Any] = {
+        "key": "room", "title": "Room", "concern": Concern.ROOM, "kind": "length", "states": State.HOTTEST,
+    }  # fmt: skip
     if "leg" not in design.layout.sizes or not design.layout.shape.endswith("U"):
         return Check(**shared, demand=np.zeros(rows), limit=limit, unjudged="room is judged for a loop")
     hot = np.maximum(basis.case_growth.max(axis=0), 0.0)

@@ -58,7 +58,7 @@ def legs_of(design: Design, basis: Basis) -> Legs:
         Legs that are not square to each other, or a run without a leg that could take the growth.
     """
     vectors, lengths, apart = basis.vectors, basis.lengths, basis.apart
-    axis = np.abs(vectors[:, :, 0]).argmax(axis=0)
+    axis = np.asarray(np.abs(vectors[:, :, 0]).argmax(axis=0))
     along = np.abs(np.take_along_axis(vectors, axis[None, :, None], axis=0)[0])
     skew = along < lengths * (1 - _SQUARE)
     if skew.any():
@@ -165,9 +165,7 @@ def _stress(
     listed = [names[i] for i in legs.leg]
     y = np.stack([growth_of[w] for w in legs.way.tolist()])
     length = legs.lengths[legs.leg]
-    delta = calc.each(
-        cantilever.shared_movement, over="leg", names=listed, y=y, l=length, c_3=legs.cubes[legs.way]
-    )
+    delta = calc.each(cantilever.shared_movement, over="leg", names=listed, y=y, l=length, c_3=legs.cubes[legs.way])
     if len(np.unique(legs.leg)) < len(legs.leg):
         delta = _resultant(legs.leg, delta, calc)
     stress, worst = calc.worst(
@@ -179,13 +177,11 @@ def _stress(
 def _resultant(leg: np.ndarray, delta: np.ndarray, calc: Calc) -> np.ndarray:
     """Movements of a leg square to it in two directions, taken together."""
     calc.say("A leg with movement in two directions square to it takes their resultant.")
-    total = np.sqrt(np.stack([(delta[leg == i] ** 2).sum(axis=0) for i in range(leg.max() + 1)]))
-    return total[leg]
+    total: np.ndarray = np.sqrt(np.stack([(delta[leg == i] ** 2).sum(axis=0) for i in range(leg.max() + 1)]))
+    return np.asarray(total[leg])
 
 
-def _anchors(
-    design: Design, basis: Basis, legs: Legs, calc: Calc
-) -> tuple[tuple[Load, ...], tuple[Check, ...]]:
+def _anchors(design: Design, basis: Basis, legs: Legs, calc: Calc) -> tuple[tuple[Load, ...], tuple[Check, ...]]:
     """Loads on both ends in every case, heating up and cooling down; and the checks of both anchors."""
     layout, cases = design.layout, design.duty.cases
     growth, R_E = basis.case_growth, basis.case_modulus / basis.E_a
@@ -251,9 +247,7 @@ def _friction(design: Design, basis: Basis, calc: Calc) -> np.ndarray:
     return friction
 
 
-def _trace_anchor(
-    design: Design, basis: Basis, legs: Legs, growth: Any, R_E: Any, friction: Any, calc: Calc
-) -> None:
+def _trace_anchor(design: Design, basis: Basis, legs: Legs, growth: Any, R_E: Any, friction: Any, calc: Calc) -> None:
     """The governing anchor load, line by line: the hottest and the coldest case at the first end."""
     if not calc.tracing:
         return
@@ -261,7 +255,7 @@ def _trace_anchor(
     if own not in legs.way:
         return
     i = int(np.flatnonzero(legs.way == own)[0])
-    l = legs.lengths[legs.leg[i]]  # noqa: E741
+    l = legs.lengths[legs.leg[i]]
     cases = design.duty.cases
     worst = int(np.abs(growth * R_E)[:, 0].argmax())
     end = design.layout.ends[0].name or "first"
@@ -275,9 +269,7 @@ def _trace_anchor(
         R_E=R_E[worst], E_a=basis.E_a, I=basis.I, delta=delta, l=l,
     )  # fmt: skip
     F_a = calc(support.anchor_force, F_th=F, F_mu=friction[0])
-    F_min = calc(
-        support.least_anchor_load, F_least=design.limits.least_anchor, w=basis.w, L=legs.lengths.sum(axis=0)
-    )
+    F_min = calc(support.least_anchor_load, F_least=design.limits.least_anchor, w=basis.w, L=legs.lengths.sum(axis=0))
     calc.given("F_des", support.rounded_up(np.maximum(F_a, F_min)), "rounded up, common practice")
 
 

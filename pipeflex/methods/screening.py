@@ -68,7 +68,9 @@ def run(design: Design, basis: Basis, calc: Calc) -> Outcome:
     notes = [*basis.remarks, *outside.notes]
     notes.append(remark("The rule is for lines that are not under severe cyclic conditions, of one size, between "
                         "two anchors with nothing between; it says nothing of reactions."))  # fmt: skip
-    shaped = [r if np.shape(r.rows) == outside.mask.shape else remark(r.text, np.ones_like(outside.mask)) for r in notes]
+    shaped = [
+        r if np.shape(r.rows) == outside.mask.shape else remark(r.text, np.ones_like(outside.mask)) for r in notes
+    ]
     return Outcome(
         design=design, method=KEY, method_title=TITLE, checks=(check,), loads=(), movements=(),
         results={**results, "q": q, "K_1": K_1}, remarks=tuple(shaped), outside=outside.mask,

@@ -156,7 +156,9 @@ def _help(
         return f"A {words} of {values[found]:.2f} m would.{need}"
     if design.layout.first_guide is not None:
         guides = step * np.arange(1, int(LONGEST / step) + 1)
-        held, moved = tried(put(free, path, float(values[-1])) if len(values) else free, "layout.first_guide", guides, key)
+        held, moved = tried(
+            put(free, path, float(values[-1])) if len(values) else free, "layout.first_guide", guides, key
+        )
         if moved is not None and (first := _first_adequate(moved, target)) is not None:
             return f"With the first guide at {held[first]:.2f} m or farther, a {words} of {values[-1]:.2f} m holds."
     if outcome is None:

@@ -29,7 +29,7 @@ class Design(Record):
     limits: Limits = sub(lambda: Limits, factory=Limits)
     title: Title = sub(lambda: Title, factory=Title)
     confirmed: tuple[Confirmed, ...] = many(lambda: Confirmed, columnar=False)
-    demo: tuple[str, ...] = names()
+    demo: tuple[str, ...] = names(default=())
     rows: int | None = field(init=False, default=None, repr=False)
     """Rows of a column; None for a single design."""
 
@@ -53,11 +53,13 @@ class Design(Record):
 
     def hottest(self) -> np.ndarray:
         """Hottest metal temperature ever reached, tie-in days included, (rows,) [K]."""
-        return np.maximum(self.temperatures().max(axis=0), self.duty.install_high)
+        found: np.ndarray = np.maximum(self.temperatures().max(axis=0), self.duty.install_high)
+        return found
 
     def coldest(self) -> np.ndarray:
         """Coldest metal temperature ever reached, tie-in days included, (rows,) [K]."""
-        return np.minimum(self.temperatures().min(axis=0), self.duty.install_low)
+        found: np.ndarray = np.minimum(self.temperatures().min(axis=0), self.duty.install_low)
+        return found
 
     def column(self) -> Self:
         """The same design with a row axis on every number; a single design becomes a column of one row."""

@@ -18,8 +18,8 @@ class Case(Record):
     name: str = text(required=True, longest=40)
     temperature: float = number("temperature", above=0, label="Metal temperature")
     pressure: float = number("pressure", default=0.0, label="Pressure")
-    reason: str = text()
-    contents_density: float | None = number("density", at_least=0, optional=True)
+    reason: str = text(default="")
+    contents_density: float | None = number("density", at_least=0, optional=True, default=None)
     first_end_movement: tuple[float, ...] = vector("movement", 3, default=(0.0,) * 3)
     last_end_movement: tuple[float, ...] = vector("movement", 3, default=(0.0,) * 3)
     first_end_rotation: tuple[float, ...] = vector("angle", 3, default=(0.0,) * 3)
@@ -44,16 +44,16 @@ class Duty(Record):
         "temperature", above=0, default=308.15, label="Installed, hottest day", basis="common practice"
     )
     cases: tuple[Case, ...] = many(lambda: Case)
-    cycles: float = number(
-        "count", at_least=1, at_most=1e12, default=7000.0, label="Cycles", basis="common practice"
-    )
+    cycles: float = number("count", at_least=1, at_most=1e12, default=7000.0, label="Cycles", basis="common practice")
     cold_spring: float = number("ratio", at_least=0, at_most=1, default=0.0, label="Cold spring")
     greatest_range_factor: float = number(
         "ratio", at_least=1.0, at_most=1.2, default=1.0, label="Greatest f", basis="1.2 by choice only"
     )
-    unused_sustained: bool = flag(label="eq. (1b), with the unused sustained stress added")
-    pressure_elongation: bool = flag(label="Count pressure elongation")
-    rule_stress: float | None = number("stress", above=0, optional=True, label="Stress of the developed-length rule")
+    unused_sustained: bool = flag(label="eq. (1b), with the unused sustained stress added", default=False)
+    pressure_elongation: bool = flag(label="Count pressure elongation", default=False)
+    rule_stress: float | None = number(
+        "stress", above=0, optional=True, label="Stress of the developed-length rule", default=None
+    )
 
     def check(self) -> None:
         given = [c.name for c in self.cases]
@@ -77,16 +77,14 @@ class Duty(Record):
 class Limits(Record):
     """What site and owner allow."""
 
-    room: float = number("length", above=0, unlimited=True, label="Room")
+    room: float = number("length", above=0, unlimited=True, label="Room", default=np.inf)
     shoe_length: float = number("length", above=0, default=0.3, label="Shoe", basis="common practice")
     shoe_alarm: float = number("movement", above=0, default=0.1, label="Movement alarm", basis="common practice")
     shoe_stop: float = number(
         "movement", above=0, default=0.15, label="Greatest movement at a shoe", basis="common practice"
     )
-    guide_limit: float = number("force", above=0, unlimited=True, label="Guide can take")
-    target: float = number(
-        "ratio", above=0, at_most=1, default=0.80, label="Target of a fit", basis="common practice"
-    )
+    guide_limit: float = number("force", above=0, unlimited=True, label="Guide can take", default=np.inf)
+    target: float = number("ratio", above=0, at_most=1, default=0.80, label="Target of a fit", basis="common practice")
     least_anchor: float = number("force", at_least=0, default=2000.0, basis="common practice")
 
 
@@ -94,14 +92,14 @@ class Limits(Record):
 class Title(Record):
     """Title block: all of it is input, so that the same design gives the same bytes."""
 
-    line: str = text(label="Line")
-    title: str = text(label="Title")
-    project: str = text(label="Project")
-    date: str = text(label="Date", longest=40)
-    revision: str = text(label="Revision", longest=20)
-    by: str = text(label="By", longest=40)
-    checked: str = text(label="Checked", longest=40)
-    notes: str = text(label="Notes", longest=4000)
+    line: str = text(label="Line", default="")
+    title: str = text(label="Title", default="")
+    project: str = text(label="Project", default="")
+    date: str = text(label="Date", longest=40, default="")
+    revision: str = text(label="Revision", longest=20, default="")
+    by: str = text(label="By", longest=40, default="")
+    checked: str = text(label="Checked", longest=40, default="")
+    notes: str = text(label="Notes", longest=4000, default="")
 
 
 @record
@@ -133,8 +131,8 @@ class PipingCode(Record):
     """
 
     key: str = text(required=True)
-    title: str = text(longest=300)
-    edition: str = text()
+    title: str = text(longest=300, default="")
+    edition: str = text(default="")
     stress_tables: tuple[str, ...] = anything()
     cycles_exponent: float = anything()
     """Power of r_i in the equivalent cycles: it belongs to the slope of f."""

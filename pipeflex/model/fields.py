@@ -9,8 +9,8 @@ from typing import Any, Final
 import numpy as np
 
 from pipeflex.errors import Fault, InputError, MissingInput, PipeflexError, refuse
+from pipeflex.formulas import OF_FUNCTION, Choice, StepTable
 from pipeflex.quantities import KINDS
-from pipeflex.trace import OF_FUNCTION, Choice, StepTable
 from pipeflex.units import si
 
 SPEC: Final = "spec"
@@ -100,9 +100,7 @@ class Text:
         if not isinstance(value, str):
             raise InputError(Fault(name, str(value)[:60], allowed="text"))
         if len(value) > self.longest:
-            raise InputError(
-                Fault(name, value, allowed=f"at most {self.longest} characters, given {len(value)}")
-            )
+            raise InputError(Fault(name, value, allowed=f"at most {self.longest} characters, given {len(value)}"))
         if any(ord(c) < 32 and c not in "\n\t" for c in value):
             raise InputError(Fault(name, value, allowed="printable characters"))
         if self.required and not value.strip():
@@ -247,6 +245,7 @@ class FrozenMap(Mapping[str, Any]):
     """A small mapping that cannot change; it compares and hashes by content, in any order."""
 
     __slots__ = ("_items",)
+    _items: dict[str, Any]
 
     def __init__(self, items: Mapping[str, Any] | None = None) -> None:
         object.__setattr__(self, "_items", dict(items or {}))

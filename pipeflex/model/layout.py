@@ -25,7 +25,7 @@ class Corner(Record):
 
     kind: str = pick_of(*CORNER_KINDS, label="Corners")
     radius: float = number("pipe dimension", at_least=0, default=0.0, label="Bend radius")
-    radius_from: str = text(longest=300)
+    radius_from: str = text(longest=300, default="")
     flanges: int = whole(default=0)
     half_angle: float = number("angle", at_least=0, default=0.0)
     spacing: float = number("pipe dimension", at_least=0, default=0.0)
@@ -50,7 +50,7 @@ class End(Record):
     """
 
     name: str = text(default="")
-    tag: str = text()
+    tag: str = text(default="")
     stiffness: tuple[float, ...] = vector("stiffness", 3, default=(np.inf,) * 3, at_least=0, unlimited=True)
     rotational_stiffness: tuple[float, ...] = vector(
         "rotational stiffness", 3, default=(np.inf,) * 3, at_least=0, unlimited=True
@@ -58,7 +58,7 @@ class End(Record):
     axis: tuple[float, ...] = vector("ratio", 3, default=(1.0, 0.0, 0.0))
     force_limits: tuple[float, ...] = vector("force", 3, default=(np.inf,) * 3, at_least=0, unlimited=True)
     moment_limits: tuple[float, ...] = vector("moment", 3, default=(np.inf,) * 3, at_least=0, unlimited=True)
-    anchor_limit: float = number("force", above=0, unlimited=True, label="Anchor can take")
+    anchor_limit: float = number("force", above=0, unlimited=True, label="Anchor can take", default=np.inf)
 
 
 @record
@@ -66,21 +66,21 @@ class Support(Record):
     """A support at a distance along one leg (legs count from 1)."""
 
     kind: str = pick_of(*SUPPORT_KINDS)
-    name: str = text()
+    name: str = text(default="")
     leg: int = whole(at_least=1)
     distance: float = number("length", at_least=0)
     gap: float = number("movement", at_least=0, default=0.0)
-    friction: float | None = number("ratio", at_least=0, at_most=2, optional=True)
-    stiffness: float = number("stiffness", above=0, unlimited=True)
+    friction: float | None = number("ratio", at_least=0, at_most=2, optional=True, default=None)
+    stiffness: float = number("stiffness", above=0, unlimited=True, default=np.inf)
     load: float = number("force", at_least=0, default=0.0)
-    limit: float = number("force", above=0, unlimited=True)
+    limit: float = number("force", above=0, unlimited=True, default=np.inf)
 
 
 @record
 class Weight(Record):
     """A concentrated mass (a valve, a flange pair) at a distance along one leg."""
 
-    name: str = text()
+    name: str = text(default="")
     mass: float = number("mass", above=0)
     leg: int = whole(at_least=1)
     distance: float = number("length", at_least=0)
@@ -90,7 +90,7 @@ class Weight(Record):
 class Segment(Record):
     """A stretch of one leg with another pipe or temperature."""
 
-    name: str = text()
+    name: str = text(default="")
     leg: int = whole(at_least=1)
     start: float = number("length", at_least=0)
     end: float = number("length", above=0)
@@ -163,9 +163,7 @@ SHAPES: Final[dict[str, Shape]] = {
         lambda s: [(0, 0, 0), (s["run"], 0, 0), (s["run"], s["leg"], 0)],
         2,
     ),
-    "Z": Shape(
-        "Z", "Z, offset", ("run", "leg"), {"before": ("the offset in the middle of the run", _half_run)}, _z, 3
-    ),
+    "Z": Shape("Z", "Z, offset", ("run", "leg"), {"before": ("the offset in the middle of the run", _half_run)}, _z, 3),
     "U": Shape("U", "U, loop", ("run", "leg"), {"width": _WIDTH, "before": _MIDDLE}, _u, 5),
     "raised U": Shape(
         "raised U",
@@ -201,13 +199,13 @@ class Layout(Record):
     points: tuple[Point, ...] = many(lambda: Point)
     corners: tuple[Corner, ...] = many(lambda: Corner)
     ends: tuple[End, ...] = many(lambda: End, factory=lambda: (End(name="west"), End(name="east")))
-    first_guide: float | None = number("length", above=0, optional=True, label="First guide")
+    first_guide: float | None = number("length", above=0, optional=True, label="First guide", default=None)
     guide_gap: float = number(
         "movement", at_least=0, at_most=0.1, default=0.003, label="Guide gap a side", basis="common practice"
     )
-    guide_stiffness: float = number("stiffness", above=0, unlimited=True, label="Guide stiffness")
-    guide_spacing: float | None = number("length", above=0, optional=True, label="Between guides")
-    rest_spacing: float | None = number("length", above=0, optional=True, label="Between rests")
+    guide_stiffness: float = number("stiffness", above=0, unlimited=True, label="Guide stiffness", default=np.inf)
+    guide_spacing: float | None = number("length", above=0, optional=True, label="Between guides", default=None)
+    rest_spacing: float | None = number("length", above=0, optional=True, label="Between rests", default=None)
     friction: float = number(
         "ratio",
         at_least=0,
@@ -270,9 +268,7 @@ class Layout(Record):
             ),
             (
                 (beyond > 0) & ((np.asarray(before) <= 0) | (np.asarray(before) >= beyond)),
-                Fault(
-                    "sizes.before", before, "within the run", "length", low=0.0, high=float(np.ravel(beyond)[0])
-                ),
+                Fault("sizes.before", before, "within the run", "length", low=0.0, high=float(np.ravel(beyond)[0])),
             ),
         )
 
@@ -325,7 +321,8 @@ class Layout(Record):
 
     def leg_lengths(self) -> np.ndarray:
         """Lengths of the legs from corner to corner, (n - 1, rows) [m]."""
-        return np.sqrt((self.leg_vectors() ** 2).sum(axis=0))
+        lengths: np.ndarray = np.sqrt((self.leg_vectors() ** 2).sum(axis=0))
+        return lengths
 
     def corner_names(self) -> tuple[str, ...]:
         """Letters of the corners, from A."""

@@ -21,20 +21,17 @@ class Curve(Record):
     `below`, which says so. reference : temperature at which growth is counted from zero [K].
     """
 
-    table: str = text()
-    row: str = text()
-    title: str = text(longest=600)
-    kind: str = text()
+    table: str = text(default="")
+    row: str = text(default="")
+    title: str = text(longest=600, default="")
+    kind: str = text(default="")
     temperature: np.ndarray = anything()
     value: np.ndarray = anything()
-    origin: tuple[str, ...] = names()
+    origin: tuple[str, ...] = names(default=())
     own: int = whole(default=0)
-    below: str = text(longest=400)
-    below_title: str = text(longest=600)
-    below_reach: float = number("temperature change", at_least=0, default=0.0)
-    below_flat: bool = flag()
-    edition: str = text(longest=300)
-    reference: float | None = number("temperature", optional=True)
+    below: str = text(longest=400, default="")
+    edition: str = text(longest=300, default="")
+    reference: float | None = number("temperature", optional=True, default=None)
 
     def check(self) -> None:
         for name in ("temperature", "value"):
@@ -55,21 +52,21 @@ class Material(Record):
     """A pipe material: its curves, and an allowable stress for each stress table."""
 
     key: str = text(required=True)
-    title: str = text()
+    title: str = text(default="")
     kind: str = pick_of(*MATERIAL_KINDS, default="ductile metal")
     density: float = number("density", above=0)
     poisson: float = number("ratio", above=0, below=0.5)
-    tensile_strength: float | None = number("stress", above=0, optional=True)
+    tensile_strength: float | None = number("stress", above=0, optional=True, default=None)
     ferrous: bool = flag(default=True)
-    minimum_temperature: float | None = number("temperature", above=0, optional=True)
+    minimum_temperature: float | None = number("temperature", above=0, optional=True, default=None)
     expansion_set: str = text(default="current")
     expansion: Curve = anything()
     modulus: Curve = anything()
     stresses: FrozenMap = anything()
-    joined_as: str = text()
+    joined_as: str = text(default="")
     joined_stresses: FrozenMap = anything(default=FrozenMap())
     """Allowable stresses once welding or brazing has destroyed the temper, where that makes a difference."""
-    stated: str = text(longest=600)
+    stated: str = text(longest=600, default="")
     """Source and origin of density, Poisson's ratio, tensile strength and minimum temperature."""
 
 
@@ -85,9 +82,9 @@ class Pipe(Record):
     wall: float = number("pipe dimension", above=0, label="Wall")
     materials: tuple[Material, ...] = many(lambda: Material, columnar=False)
     material_row: int = whole(default=0)
-    size: str = text(label="Size", help="DN 200, NPS 8, 8 in, or a tube size")
-    schedule: str = text(label="Wall", help="Sch 40, STD, 10S, or a tube type")
-    dimensions_from: str = text(longest=300)
+    size: str = text(label="Size", help="DN 200, NPS 8, 8 in, or a tube size", default="")
+    schedule: str = text(label="Wall", help="Sch 40, STD, 10S, or a tube type", default="")
+    dimensions_from: str = text(longest=300, default="")
     mill_tolerance: float = number(
         "ratio", at_least=0, below=0.5, default=0.125, label="Mill tolerance", basis="common practice"
     )

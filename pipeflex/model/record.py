@@ -55,7 +55,7 @@ class Record:
     @classmethod
     def specs(cls) -> tuple[tuple[str, Any], ...]:
         """Names of the fields and their declarations."""
-        return _specs(cls)
+        return _known(cls)[1]
 
     @classmethod
     def default(cls, name: str) -> Any:
@@ -72,7 +72,7 @@ class Record:
         )
 
     def __eq__(self, other: object) -> bool:
-        return self is other or (type(self) is type(other) and self.content() == other.content())  # type: ignore[attr-defined]
+        return self is other or (type(self) is type(other) and self.content() == other.content())
 
     def __hash__(self) -> int:
         return hash(self.content())
@@ -80,7 +80,7 @@ class Record:
     def with_raw(self, **changes: Any) -> Self:
         """A copy with fields changed and nothing validated: for numbers that were validated before."""
         new = object.__new__(type(self))
-        for name in _field_names(type(self)):
+        for name in _known(type(self))[0]:
             object.__setattr__(new, name, changes[name] if name in changes else getattr(self, name))
         return new
 
@@ -105,12 +105,12 @@ class Record:
 
 
 @cache
-def _specs(cls: type) -> tuple[tuple[str, Any], ...]:
+def _specs(cls: Any) -> tuple[tuple[str, Any], ...]:
     return tuple((f.name, f.metadata[SPEC]) for f in fields(cls) if SPEC in f.metadata)
 
 
 @cache
-def _field_names(cls: type) -> tuple[str, ...]:
+def _field_names(cls: Any) -> tuple[str, ...]:
     return tuple(f.name for f in fields(cls))
 
 
@@ -180,10 +180,11 @@ def _child(value: Any, part: str, path: str) -> Any:
 def put(root: T, path: str, new: Any) -> T:
     """A copy of a record with the value at a dotted path replaced, validated as when it was made."""
     try:
-        return _put(root, path.split("."), new, path)
+        changed: T = _put(root, path.split("."), new, path)
     except InputError as error:
         known = [f if f.field.startswith(path) else f.prefixed(path.rpartition(".")[0]) for f in error.faults]
         raise type(error)(*known) from None
+    return changed
 
 
 def _put(value: Any, parts: list[str], new: Any, path: str) -> Any:
