@@ -62,8 +62,8 @@ def legs_of(design: Design, basis: Basis) -> Legs:
     along = np.abs(np.take_along_axis(vectors, axis[None, :, None], axis=0)[0])
     skew = along < lengths * (1 - _SQUARE)
     if skew.any():
-        leg = int(skew.any(axis=1).argmax()) + 1
-        raise ScopeError(Fault(f"layout, leg {leg}", "a leg at a slant", allowed="legs square to each other"))
+        first = int(skew.any(axis=1).argmax()) + 1
+        raise ScopeError(Fault(f"layout, leg {first}", "a leg at a slant", allowed="legs square to each other"))
     moves = (np.abs(apart) > _SQUARE).any(axis=1)
     square = moves[:, None] & (axis[None] != np.arange(3)[:, None])
     way, leg = np.nonzero(square)

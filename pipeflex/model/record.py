@@ -2,7 +2,6 @@
 
 from collections.abc import Callable, Iterator
 from dataclasses import dataclass, fields
-from functools import cache
 from typing import Any, ClassVar, Self, TypeVar, dataclass_transform
 
 import numpy as np
@@ -104,14 +103,16 @@ class Record:
         return iter(found)
 
 
-@cache
-def _specs(cls: Any) -> tuple[tuple[str, Any], ...]:
-    return tuple((f.name, f.metadata[SPEC]) for f in fields(cls) if SPEC in f.metadata)
+_KNOWN: Final[dict[type, tuple[tuple[str, ...], tuple[tuple[str, Any], ...]]]] = {}
 
 
-@cache
-def _field_names(cls: Any) -> tuple[str, ...]:
-    return tuple(f.name for f in fields(cls))
+def _known(cls: type) -> tuple[tuple[str, ...], tuple[tuple[str, Any], ...]]:
+    """Names of all fields, and the declared ones with their declarations; found once a class."""
+    if cls not in _KNOWN:
+        found = fields(cls)
+        declared = tuple((f.name, f.metadata[SPEC]) for f in found if SPEC in f.metadata)
+        _KNOWN[cls] = (tuple(f.name for f in found), declared)
+    return _KNOWN[cls]
 
 
 def _sub_content(value: Any) -> Any:
