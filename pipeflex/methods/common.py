@@ -1,5 +1,6 @@
 """What several methods share: words for places, checks of room, shoes and guides, and what a method cannot see."""
 
+from itertools import pairwise
 from typing import Any
 
 import numpy as np
@@ -49,7 +50,7 @@ def leg_names(design: Design) -> tuple[str, ...]:
     """Names of the legs between ends and corners: "leg 2, A to B"."""
     ends = design.layout.ends
     stops = (ends[0].name or "first end", *design.layout.corner_names(), ends[1].name or "last end")
-    return tuple(f"leg {i + 1}, {a} to {b}" for i, (a, b) in enumerate(zip(stops, stops[1:], strict=False)))
+    return tuple(f"leg {i + 1}, {a} to {b}" for i, (a, b) in enumerate(pairwise(stops)))
 
 
 def unseen(design: Design, outside: Outside) -> None:

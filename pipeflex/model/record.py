@@ -2,7 +2,7 @@
 
 from collections.abc import Callable, Iterator
 from dataclasses import dataclass, fields
-from typing import Any, ClassVar, Self, TypeVar, dataclass_transform
+from typing import Any, ClassVar, Final, Self, TypeVar, dataclass_transform
 
 import numpy as np
 
