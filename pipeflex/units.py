@@ -21,7 +21,7 @@ from pipeflex.errors import Fault, InputError, MissingInput, PipeflexError, Unit
 from pipeflex.notation import LONGEST, Amount, amount, ascii_unit, plain, strange
 from pipeflex.present import UnitSystem, display
 from pipeflex.steam import ATMOSPHERE, saturation_temperature
-from pipeflex.unit_names import SCALES, combined, fits, known_unit, meaning, nearest, permitted
+from pipeflex.unit_names import SCALES, Exact, combined, fits, known_unit, meaning, nearest, permitted
 
 _UNLIMITED: Final = {"length", "movement", "force", "moment", "stiffness", "rotational stiffness"}
 """Kinds that may be infinite: a room without limit, an anchor that does not give."""
@@ -210,18 +210,22 @@ def _scaled(found: Amount, text: str, kind: str) -> Q:
     if kind == "temperature" and unit in SCALES:
         scale = display(kind, SCALES[unit])
         return value * scale.factor + scale.offset
-    exact, offset = None, Q(0)
-    if kind == "pressure" and (side := _SIDE.fullmatch(unit)):
-        exact = known_unit(side[1])
-        offset = -Q(ATMOSPHERE) if exact and side[2].strip("()") == "a" else offset
-    exact = exact or known_unit(unit)
+    exact, side = _sided(unit) if kind == "pressure" else (known_unit(unit), "")
     near = tuple(f"{written} {spelling}" for spelling in nearest(unit, kind))
     if exact is None:
         _refuse(text, kind, f"{permitted(kind)}; {unit!r} is no unit known here", near)
     slipped = unit in SCALES if kind == "temperature change" else kind == "temperature" and unit != "K"
     if slipped or not fits(exact[1], kind):
         _refuse(text, kind, f"{permitted(kind)}; {unit} is {meaning(unit, exact[1])}", near)
-    return value * exact[0] + offset
+    return value * exact[0] - (Q(ATMOSPHERE) if side == "a" else 0)
+
+
+def _sided(unit: str) -> tuple[Exact | None, str]:
+    """The unit of a pressure, and "g" for gauge, "a" for absolute or nothing where it does not say."""
+    side = _SIDE.fullmatch(unit)
+    if side and (exact := known_unit(side[1])):
+        return exact, side[2].strip("()")
+    return known_unit(unit), ""
 
 
 def _possible(exact: Q, text: str, kind: str) -> float:
@@ -247,7 +251,7 @@ def _saturation(pressure: str, text: str) -> float:
     except UnitError:
         _refuse(text, "temperature", permitted)
     found = amount(pressure)
-    if found and (unit := known_unit(found.unit)) and fits(unit[1], "pressure"):
+    if found and not _sided(found.unit)[1]:
         near = (f"{pressure} g sat", f"{pressure} a sat")
         _refuse(text, "temperature", f"{permitted}; gauge or absolute?", near)
     try:
