@@ -1,0 +1,291 @@
+"""The command line: sheets and answers of design files, materials and sizes of the tables.
+
+Exit status: 0 computed, 1 a fault of the program or of the output, 2 bad input.
+"""
+
+import argparse
+import codecs
+import io
+import os
+import sys
+import unicodedata
+from collections.abc import Sequence
+from contextlib import suppress
+from pathlib import Path
+from typing import TYPE_CHECKING, Final
+
+from pipeflex import __version__
+from pipeflex.errors import Fault, InputError, PipeflexError
+from pipeflex.present import UNIT_SYSTEMS, span, text
+
+if TYPE_CHECKING:
+    from pipeflex.files.design_file import Opened
+    from pipeflex.sheet import Sheet
+
+DEMO: Final = "line-1204.toml"
+PAPERS: Final = ("A4", "Letter")
+BAD_INPUT: Final = 2
+INTERRUPTED, PIPE_CLOSED = 130, 141
+"""As a shell reports the signals for them."""
+
+_MOST_FAULTS: Final = 20
+_ASCII: Final = {
+    "°": "deg ", "µ": "u", "μ": "u", "·": "*", "×": "x", "−": "-", "–": "-", "—": "-", "→": "->", "←": "<-",
+    "≤": "<=", "≥": ">=", "√": "sqrt", "Δ": "D", "δ": "delta", "α": "alpha", "π": "pi", "σ": "sigma", "ø": "o",
+    "ß": "ss", "“": '"', "”": '"', "‘": "'", "’": "'", "│": "|", "─": "-", "═": "=", "■": "#", "▲": "^",
+}  # fmt: skip
+
+
+def main(argv: Sequence[str] | None = None) -> int:
+    """Run one command; returns the exit status and never raises for what a user gave or did."""
+    _encode_plainly()
+    try:
+        given = _parser().parse_args(argv)
+        given.run(given)
+        _flush()
+        return 0
+    except PipeflexError as error:
+        return _refused(error)
+    except KeyboardInterrupt:
+        _say("stopped")
+        return INTERRUPTED
+    except BrokenPipeError:
+        _drop_output()
+        return PIPE_CLOSED
+    except OSError as error:
+        _drop_output()
+        _say(f"{error.filename or 'output'}: {error.strerror or error}")
+        return 1
+    except Exception as error:
+        _say(f"a fault of the program, not of the input: {type(error).__name__}: {error}")
+        return 1
+
+
+def _parser() -> argparse.ArgumentParser:
+    parser = argparse.ArgumentParser(
+        prog="pipeflex", description="Thermal expansion of a pipe run: growth, leg, anchors, guides, calc sheet."
+    )
+    parser.add_argument("--version", action="version", version=f"pipeflex {__version__}")
+    commands = parser.add_subparsers(required=True, metavar="COMMAND")
+
+    sheet = commands.add_parser("sheet", help="write the calc sheet of a design file")
+    sheet.add_argument("design", metavar="DESIGN.toml")
+    sheet.add_argument("-o", "--output", metavar="OUT.html", required=True)
+    sheet.add_argument("--overwrite", action="store_true", help="replace the file if there is one")
+    _add_display(sheet)
+    sheet.set_defaults(run=_sheet)
+
+    solve = commands.add_parser("solve", help="print the answer of a design file")
+    solve.add_argument("design", metavar="DESIGN.toml")
+    solve.add_argument("--json", action="store_true", help="SI numbers for programs")
+    solve.add_argument("--method", metavar="KEY", help="a method of the ladder; by default the highest that may answer")
+    _add_display(solve)
+    solve.set_defaults(run=_solve)
+
+    demo = commands.add_parser("demo", help="copy an invented design, write its calc sheet, print its ledger")
+    demo.add_argument("folder", metavar="FOLDER", nargs="?", default=".")
+    demo.add_argument("--overwrite", action="store_true", help="replace the files if there are some")
+    _add_display(demo)
+    demo.set_defaults(run=_demo)
+
+    materials = commands.add_parser("materials", help="list the materials of the tables")
+    materials.add_argument("--code", metavar="KEY", default="B31.3-2018", help="edition with the allowable stresses")
+    _add_units(materials)
+    materials.set_defaults(run=_materials)
+
+    sizes = commands.add_parser("sizes", help="list pipe sizes, or the walls of one")
+    sizes.add_argument("size", metavar="SIZE", nargs="*", help="such as DN 200, NPS 8 or 8 in")
+    _add_units(sizes)
+    sizes.set_defaults(run=_sizes)
+    return parser
+
+
+def _add_units(parser: argparse.ArgumentParser) -> None:
+    parser.add_argument("--units", choices=UNIT_SYSTEMS, default="metric", help="units shown (metric)")
+
+
+def _add_display(parser: argparse.ArgumentParser) -> None:
+    _add_units(parser)
+    parser.add_argument("--paper", choices=PAPERS, default="A4", help="paper of the sheet (A4)")
+
+
+# ------------------------------------------------------------------------------------------------ commands
+
+
+def _sheet(given: argparse.Namespace) -> None:
+    made = _sheet_of(_opened(given.design), given)
+    print(made.write(given.output, overwrite=given.overwrite))
+
+
+def _solve(given: argparse.Namespace) -> None:
+    found = _opened(given.design)
+    if not given.json:
+        print(_sheet_of(found, given, given.method).text())
+        return
+    from pipeflex.files.results import to_json
+    from pipeflex.methods import ladder, solve
+
+    print(to_json(solve(found.design, given.method), ladder(found.design)), end="")
+
+
+def _demo(given: argparse.Namespace) -> None:
+    from pipeflex.files.design_file import read_opened
+    from pipeflex.files.text_file import read_text, write_text
+
+    folder = Path(given.folder)
+    design, page = folder / DEMO, (folder / DEMO).with_suffix(".html")
+    if not given.overwrite:
+        for path in (design, page):
+            if os.path.lexists(path):
+                raise InputError(Fault(str(path), "exists already", allowed="another folder, or --overwrite"))
+    shipped = read_text(_shipped() / DEMO)
+    made = _sheet_of(read_opened(shipped, DEMO), given)
+    write_text(design, shipped, make_folder=True)
+    made.write(page, overwrite=given.overwrite)
+    print(made.text())
+    print(
+        f"\nAn invented line. Its design is in {design}, its calc sheet in {page}.\n"
+        f"Open the sheet in a browser and print it from there. Change the design in any editor, then:\n"
+        f'    pipeflex sheet "{design}" -o "{page}" --overwrite'
+    )
+
+
+def _materials(given: argparse.Namespace) -> None:
+    from pipeflex.codes import code
+    from pipeflex.data.materials import material, material_keys, offered
+
+    edition = code(given.code)
+    offers = offered(edition.stress_tables)
+    print(f"Material, temperatures for which the tables hold growth, modulus and allowable stress ({edition.key})\n")
+    _columns([(o.key, span(o.low, o.high, "temperature", given.units), o.title, o.stress_from) for o in offers])
+    if others := [key for key in material_keys() if key not in {offer.key for offer in offers}]:
+        print("\nWithout an allowable stress for this edition\n")
+        _columns([(key, material(key).title) for key in others])
+
+
+def _sizes(given: argparse.Namespace) -> None:
+    from pipeflex.data.pipes import sizes
+
+    if not given.size:
+        _columns([("NPS", "DN"), *sizes()])
+        return
+    wanted = " ".join(given.size)
+    rows = [
+        (", ".join(names), text(wall, "pipe dimension", given.units), source)
+        for (diameter, wall, source), names in _walls(wanted).items()
+    ]
+    _columns([("", "outside diameter", "wall", ""), *rows])
+
+
+def _walls(size: str) -> dict[tuple[float, float, str], list[str]]:
+    """Names of each wall of a size, steel pipe first, then copper tube."""
+    from pipeflex.data.pipes import dimensions, walls
+    from pipeflex.errors import TableError
+
+    found: dict[tuple[float, float, str], list[str]] = {}
+    refused: list[TableError] = []
+    names: list[str] = []
+    try:
+        names += walls(size)
+    except TableError as error:
+        refused.append(error)
+    for name in (*names, "K", "L", "M"):
+        with suppress(TableError):
+            one = dimensions(size, name)
+            found.setdefault((one.outside_diameter, one.wall, one.source), []).append(name)
+    if not found:
+        raise refused[0]
+    return found
+
+
+def _opened(path: str) -> "Opened":
+    """The design of a file; what is to be said about the file goes to the error stream."""
+    from pipeflex.files.design_file import opened
+
+    found = opened(path)
+    for note in found.notes:
+        _say(f"{path}: {note}")
+    return found
+
+
+def _sheet_of(found: "Opened", given: argparse.Namespace, method: str | None = None) -> "Sheet":
+    from pipeflex.files.design_file import write_design
+    from pipeflex.methods import ladder, reserve, solve
+    from pipeflex.sheet import Sheet
+
+    design = found.design
+    return Sheet(
+        outcome=solve(design, method),
+        units=given.units,
+        design_text=write_design(design),
+        fingerprint=design.fingerprint,
+        ladder=ladder(design),
+        turns=reserve(design),
+        paper=given.paper,
+    )
+
+
+def _shipped() -> Path:
+    """Folder of the notebooks and their designs: in the package, or beside it in a checkout."""
+    package = Path(__file__).parent
+    inside = package / "notebooks"
+    return inside if inside.is_dir() else package.parent / "notebooks"
+
+
+# -------------------------------------------------------------------------------------------------- output
+
+
+def _columns(rows: Sequence[tuple[str, ...]]) -> None:
+    widths = [max(map(len, column)) for column in zip(*rows, strict=True)]
+    for row in rows:
+        print("  ".join(cell.ljust(width) for cell, width in zip(row, widths, strict=True)).rstrip())
+
+
+def _refused(error: PipeflexError) -> int:
+    lines = error.text().splitlines()
+    more = len(lines) - _MOST_FAULTS
+    if len(lines) == 1:
+        _say(lines[0])
+    else:
+        _say(f"{len(lines)} faults")
+        shown = lines[:_MOST_FAULTS] + ([f"and {more} more"] if more > 0 else [])
+        print("\n".join(f"  {line}" for line in shown), file=sys.stderr)
+    return BAD_INPUT
+
+
+def _say(message: str) -> None:
+    with suppress(OSError):
+        print(f"pipeflex: {message}", file=sys.stderr)
+
+
+def _flush() -> None:
+    if sys.stdout is not None:
+        sys.stdout.flush()
+
+
+def _drop_output() -> None:
+    """Nothing more can be written: let the closing of the stream at exit go nowhere."""
+    with suppress(OSError, ValueError, AttributeError):
+        os.dup2(os.open(os.devnull, os.O_WRONLY), sys.stdout.fileno())
+
+
+def _encode_plainly() -> None:
+    """Write what a terminal's encoding lacks in plain letters instead of failing."""
+    codecs.register_error("pipeflex", _plain)
+    for stream in (sys.stdout, sys.stderr):
+        if isinstance(stream, io.TextIOWrapper):
+            stream.reconfigure(errors="pipeflex")
+
+
+def _plain(error: UnicodeError) -> tuple[str, int]:
+    assert isinstance(error, UnicodeEncodeError)
+    return "".join(map(_plain_letter, error.object[error.start : error.end])), error.end
+
+
+def _plain_letter(letter: str) -> str:
+    plain = unicodedata.normalize("NFKD", letter).encode("ascii", "ignore").decode()
+    return _ASCII.get(letter) or plain or "?"
+
+
+if __name__ == "__main__":
+    raise SystemExit(main())

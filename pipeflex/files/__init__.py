@@ -1,0 +1,1 @@
+"""What is kept: design files, answers as JSON, the user's folder."""
