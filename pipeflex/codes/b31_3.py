@@ -9,6 +9,13 @@ from typing import Any, Final
 
 import numpy as np
 
+from pipeflex.codes.b31_3_flexibility import (
+    BEND_FACTORS,
+    axial_stress,
+    computed_range,
+    resultant_bending,
+    torsional_stress,
+)
 from pipeflex.model.duty import PipingCode
 from pipeflex.model.fields import FrozenMap
 from pipeflex.trace import Choice, formula
@@ -132,6 +139,8 @@ def editions() -> tuple[PipingCode, ...]:
         allowable_range=(range_factor_2018, *_CAPS, allowable_range),
         allowable_range_with_sustained=(range_factor_2018, *_CAPS, with_sustained),
         screening=(screening_value, greatest_screening_value),
+        bend_factors=FrozenMap(BEND_FACTORS),
+        expansion_stress=(axial_stress, resultant_bending, torsional_stress, computed_range),
         severe_cyclic=severe_cyclic,
         remarks=(_CONFIRM.format("ASME B31.3-2018"),),
         options=FrozenMap({"ferrous_strength": 517.2e6, "ferrous_temperature": 371 + 273.15}),

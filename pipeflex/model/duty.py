@@ -139,9 +139,10 @@ class PipingCode(Record):
     allowable_range: Clauses = anything()
     allowable_range_with_sustained: Clauses = anything(default=())
     screening: Clauses = anything(default=())
-    bend_factors: Any = anything(default=None)
-    expansion_stress: Callable[..., Any] | None = anything(default=None)
-    sustained_stress: Callable[..., Any] | None = anything(default=None)
+    bend_factors: FrozenMap = anything(default=FrozenMap())
+    """Rules of each kind of corner: flexibility and stress intensification."""
+    expansion_stress: Clauses = anything(default=())
+    sustained_stress: Clauses = anything(default=())
     severe_cyclic: Callable[..., Any] | None = anything(default=None)
     modulus_for_range: str = pick_of("at 21 degC", "hot", default="at 21 degC")
     constants: str = pick_of("SI", "U.S.", default="SI")
