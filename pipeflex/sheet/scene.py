@@ -1,0 +1,363 @@
+"""The drawing of one outcome: a pure function to plain lists, which SVG and the desks render."""
+
+import math
+from collections.abc import Iterator
+
+import numpy as np
+
+from pipeflex import present
+from pipeflex.model.layout import Layout
+from pipeflex.model.outcome import Outcome
+from pipeflex.present import UnitSystem
+from pipeflex.sheet.drawing import marks, overlays
+from pipeflex.sheet.drawing.board import Board, moved, square_to, unit_between
+from pipeflex.sheet.drawing.describe import described, length_text
+from pipeflex.sheet.drawing.dimensions import Dimension, place_dimensions
+from pipeflex.sheet.drawing.parts import HEAVY, SMALL, TEXT, THIN, XY, Label, Scene, shortened, text_width
+from pipeflex.sheet.drawing.run import VIEWS, DrawnRun, drawn_run, view_matrix
+
+__all__ = ["VIEWS", "Scene", "scene"]
+
+_LONGEST = 22
+_ROOM_SHOWN = 1.8
+"""A room up to so many times the leg is drawn; a greater one is only named."""
+
+
+def scene(
+    outcome: Outcome,
+    units: UnitSystem = "metric",
+    view: str = "plan",
+    *,
+    viewpoint: int = 0,
+    focus: str = "",
+    width: float = 160.0,
+    height: float = 110.0,
+) -> Scene:
+    """Draw a single row of an outcome.
+
+    Parameters
+    ----------
+    view : "plan", "elevation" or "isometric". viewpoint : 0 to 3, of the isometric.
+    focus : path of the field whose dimension is drawn strong ("layout.sizes.leg").
+    width, height : of the paper [mm], at least 110 by 70.
+    """
+    if view not in VIEWS:
+        raise ValueError(f"view {view!r}: one of {', '.join(VIEWS)}")
+    layout = outcome.design.layout
+    board = Board(width, height)
+    run = _laid_out(outcome, units, view, viewpoint, width, height)
+    pipe = outcome.design.pipe
+    outer = pipe.outside_diameter / 2 + (
+        pipe.insulation_thickness + pipe.cladding_thickness if pipe.insulation_thickness else 0.0
+    )
+    covered = run.on_paper(outer)
+    clear = max(1.8, covered + 0.7)
+    _pipe(board, run, covered)
+    _ends(board, run)
+    _supports(board, run, layout, clear)
+    band = overlays.ribbon(board, run, outcome, clear - 0.4)
+    times = overlays.hot_shape(board, run, outcome)
+    room = _room(board, run, outcome, view)
+    _corner_of_paper(board, run, layout, view)
+    _strip(board, run, outcome, units, view, times)
+    if band is not None:
+        overlays.flags(board, *band)
+    place_dimensions(board, _dimensions(run, outcome, units, view, focus, clear, room))
+    _letters(board, run, layout, clear)
+    _end_names(board, run, layout, clear)
+    overlays.growth_arrows(board, run, outcome, clear, units)
+    _support_names(board, run, layout, units, clear)
+    return Scene(
+        title=f"{view}, {run.scale_text}",
+        width=width,
+        height=height,
+        scale=run.scale_text,
+        shapes=tuple(board.shapes),
+        labels=tuple(board.labels),
+        spots=tuple(board.spots),
+        description=described(outcome, units, view, run.scale_text),
+        left_out=tuple(board.left_out),
+    )
+
+
+def _laid_out(
+    outcome: Outcome, units: UnitSystem, view: str, viewpoint: int, width: float, height: float
+) -> DrawnRun:
+    layout = outcome.design.layout
+    inner = (18.0, 18.0, width - 36.0, height - 18.0 - 31.0)
+    extra = None
+    if view == "plan" and (room := _drawn_room(outcome)) is not None:
+        extra = np.array([[0.0, room, 0.0]])
+    return drawn_run(layout, units, view_matrix(view, viewpoint), inner, 0.22 * width, extra)
+
+
+def _drawn_room(outcome: Outcome) -> float | None:
+    """The room [m] if it is that of a loop and near enough to be drawn."""
+    layout, room = outcome.design.layout, float(outcome.design.limits.room)
+    if not layout.shape.endswith("U") or not room <= _ROOM_SHOWN * float(layout.sizes["leg"]):
+        return None
+    return room
+
+
+def _pipe(board: Board, run: DrawnRun, covered: float) -> None:
+    """The pipe as one heavy line, and the outside of its insulation as thin ones where they stand clear."""
+    for piece in run.centreline():
+        points = [run.paper(p) for p in piece]
+        if covered > 1.0:
+            for side in (covered, -covered):
+                board.draw(_beside(points, side), "faint", THIN, keep="")
+        board.draw(points, weight=HEAVY, keep="solid", clear=max(0.6, covered))
+    for i, leg in enumerate(run.legs):
+        u = run.direction(leg.unit)
+        if leg.broken:
+            marks.break_mark(board, run.paper(leg.start + leg.unit * leg.near), u)
+        if u == (0.0, 0.0):
+            marks.toward_reader(board, run.paper(run.corners[i]))
+
+
+def _beside(points: list[XY], distance: float) -> list[XY]:
+    """A line beside another, on its left as it runs."""
+    ways = [u for a, b in zip(points, points[1:], strict=False) if (u := unit_between(a, b)) != (0.0, 0.0)]
+    if not ways:
+        return points
+    places = [points[0]] + [b for a, b in zip(points, points[1:], strict=False) if math.dist(a, b) > 1e-9]
+    out = []
+    for p, u, v in zip(places, [ways[0], *ways], [*ways, ways[-1]], strict=True):
+        n, m = square_to(u), square_to(v)
+        scale = distance / max(0.3, (1 + n[0] * m[0] + n[1] * m[1]))
+        out.append((p[0] + (n[0] + m[0]) * scale, p[1] + (n[1] + m[1]) * scale))
+    return out
+
+
+def _ends(board: Board, run: DrawnRun) -> None:
+    for at, outward in _end_places(run):
+        marks.anchor(board, at, outward)
+
+
+def _end_places(run: DrawnRun) -> list[tuple[XY, XY]]:
+    """Both ends on paper, with the direction away from the run."""
+    first, last = run.legs[0].unit, run.legs[-1].unit
+    return [
+        (run.paper(run.corners[0]), run.direction(-first)),
+        (run.paper(run.corners[-1]), run.direction(last)),
+    ]
+
+
+def _marked(run: DrawnRun, layout: Layout) -> Iterator[tuple[str, str, int, float, float]]:
+    """Supports as drawn: kind, name, leg from 0, distance along it, gap."""
+    lengths = [leg.length for leg in run.legs]
+    last = len(lengths) - 1
+    if layout.first_guide is not None and last > 0:
+        for leg, way in ((0, -1), (last, 1)):
+            d = float(layout.first_guide)
+            while d < lengths[leg]:
+                yield "guide", "", leg, lengths[leg] - d if way < 0 else d, float(layout.guide_gap)
+                if layout.guide_spacing is None:
+                    break
+                d += float(layout.guide_spacing)
+    for s in layout.supports:
+        yield s.kind, s.name, s.leg - 1, float(s.distance), float(s.gap)
+    if layout.rest_spacing is not None:
+        for leg in {0, last}:
+            spacing = float(layout.rest_spacing)
+            for i in range(1, min(2000, int((lengths[leg] - 1e-9) / spacing)) + 1):
+                yield "rest", "", leg, i * spacing if leg == 0 else lengths[leg] - i * spacing, 0.0
+
+
+def _supports(board: Board, run: DrawnRun, layout: Layout, clear: float) -> None:
+    """Marks of all supports that stand on a drawn part of the run, none upon another of its kind."""
+    placed: list[tuple[str, XY]] = []
+    for kind, name, leg, distance, _ in _marked(run, layout):
+        place = run.legs[leg].place(distance)
+        u = run.direction(run.legs[leg].unit)
+        if place is None or u == (0.0, 0.0):
+            continue
+        at = run.paper(place)
+        if any(k == kind and math.dist(at, p) < 4.5 for k, p in placed):
+            continue
+        placed.append((kind, at))
+        marks.MARKS[kind](board, at, u, clear)
+        board.spot(at, name or kind)
+    for w in layout.weights:
+        place = run.legs[w.leg - 1].place(float(w.distance))
+        if place is not None:
+            marks.weight(board, run.paper(place))
+            board.spot(run.paper(place), w.name or "weight")
+
+
+def _room(board: Board, run: DrawnRun, outcome: Outcome, view: str) -> tuple[XY, XY] | None:
+    room = _drawn_room(outcome)
+    return None if view != "plan" or room is None else overlays.room_edge(board, run, room)
+
+
+def _corner_of_paper(board: Board, run: DrawnRun, layout: Layout, view: str) -> None:
+    """Directions in words, in that corner of the paper which is free."""
+    words = [layout.along, layout.across, "up"]
+    vectors = np.eye(3)
+    arms = [
+        (run.direction(v), "N" if w.lower() == "north" else shortened(w, 16))
+        for v, w in zip(vectors, words, strict=True)
+    ]
+    arms = [(d, w) for d, w in arms if d != (0.0, 0.0)]
+    room = 10.0 + max((text_width(w, SMALL) for d, w in arms if abs(d[0]) > 0.4), default=0.0)
+    left = 12.0 if all(d[0] > -0.1 for d, _ in arms) else room
+    right = 4.0 if all(d[0] < 0.1 for d, _ in arms) else room
+    up, down = 14.0, (5.0 if all(d[1] < 0.1 for d, _ in arms) else 12.0)
+    corners = [
+        (board.width - right, up), (left, up + 6), (board.width - right, board.height - 14 - down),
+        (left, board.height - 14 - down),
+    ]  # fmt: skip
+    at = next((c for c in corners if board.free_for_line((c[0] - left + 3, c[1]), (c[0] + right - 3, c[1]), 8)), None)
+    marks.axes(board, at or corners[0], arms)
+
+
+def _strip(board: Board, run: DrawnRun, outcome: Outcome, units: UnitSystem, view: str, times: int | None) -> None:
+    """Title above; below it scale bar, marks used, and what holds for the whole drawing."""
+    layout = outcome.design.layout
+    title = f"{view[0].upper()}{view[1:]}, {run.scale_text}"
+    board.write(Label((2.0, 3.6), title, size=TEXT, anchor="start", bold=True))
+    if any(leg.broken for leg in run.legs):
+        x = 2.0 + text_width(title, TEXT) * 1.1 + 3.0
+        board.write(Label((x, 3.6), "long straights broken", "ink", SMALL, "start"))
+    y = board.height - 8.0
+    x = 2.0
+    kinds = dict.fromkeys(kind for kind, *_ in _marked(run, layout))
+    for kind in kinds:
+        at = (x + 3.0, y)
+        board.draw(((x, y), (x + 6.0, y)), weight=HEAVY, keep="solid", clear=1.2)
+        marks.MARKS[kind](board, at, (1.0, 0.0), 1.6)
+        board.write(Label((x + 7.5, y), kind, "ink", SMALL, "start"))
+        x += 11.0 + text_width(kind, SMALL)
+    if times is not None:
+        board.draw(((x, y), (x + 7.0, y)), "heat", 0.5, (2.2, 1.1), keep="solid", clear=1.0)
+        words = f"hot shape × {times}"
+        board.write(Label((x + 8.5, y), words, "ink", SMALL, "start"))
+        x += 12.0 + text_width(words, SMALL)
+    if any(a.key == overlays.RIBBON for a in outcome.along):
+        board.fill(((x, y), (x, y - 1.2), (x + 7.0, y - 2.0), (x + 7.0, y)), "ribbon", 0.45, keep="solid")
+        board.draw(((x, y - 1.6), (x + 7.0, y - 1.6)), "ribbon", THIN, keep="")
+        board.write(Label((x + 8.5, y), "ratio S_E/S_A, line at 1", "ink", SMALL, "start"))
+    y = board.height - 3.2
+    end = marks.scale_bar(board, (2.0, y), run.scale, units)
+    notes = [f"lengths in {present.display('length', units).unit}"]
+    radii = {round(r, 9) for r in run.radii if r > 0}
+    if len(radii) == 1:
+        notes.append(f"bends R {present.text(radii.pop(), 'pipe dimension', units, 0 if units == 'metric' else 1)}")
+    if overlays.growth(outcome):
+        notes.append("arrows: growth, installed to hottest")
+    room = float(outcome.design.limits.room)
+    if math.isfinite(room) and _drawn_room(outcome) is None and layout.shape.endswith("U"):
+        notes.append(f"room {present.text(room, 'length', units)}")
+    board.write(Label((end + 20.0, y), "; ".join(notes), "ink", SMALL, "start"))
+
+
+def _letters(board: Board, run: DrawnRun, layout: Layout, clear: float) -> None:
+    """Letters of the corners, outside the bends; corners that fall together share one label."""
+    names: dict[XY, list[str]] = {}
+    outside: dict[XY, XY] = {}
+    for i, name in enumerate(layout.corner_names()):
+        at = run.paper(run.corners[i + 1])
+        u, v = run.direction(run.legs[i].unit), run.direction(run.legs[i + 1].unit)
+        key = next((k for k in names if math.dist(k, at) < 2.0), at)
+        names.setdefault(key, []).append(name)
+        outside.setdefault(key, unit_between((0.0, 0.0), (u[0] - v[0], u[1] - v[1])))
+    for at, listed in names.items():
+        text = ", ".join(listed) if len(listed) < 4 else f"{listed[0]} … {listed[-1]}"
+        board.beside(at, text, first=outside[at], distances=[clear + d for d in (2.0, 3.2, 4.7, 6.7, 9.5)], bold=True)
+
+
+def _end_names(board: Board, run: DrawnRun, layout: Layout, clear: float) -> None:
+    for (at, outward), end, word in zip(_end_places(run), layout.ends, ("first end", "last end"), strict=True):
+        name = end.name or word
+        text = shortened(f"{name}, {end.tag}" if end.tag else name, _LONGEST)
+        base = moved(at, outward, 1.5)
+        first = (0.0, -1.0) if abs(outward[1]) < 0.7 else (1.0, 0.0)
+        board.beside(base, text, first=first, distances=(7.8, 9.5, 12.0, 15.0, 18.0))
+        board.spot(at, f"anchor {name}", "layout.ends")
+
+
+def _dimensions(
+    run: DrawnRun,
+    outcome: Outcome,
+    units: UnitSystem,
+    view: str,
+    focus: str,
+    clear: float,
+    room: tuple[XY, XY] | None,
+) -> Iterator[Dimension]:
+    layout = outcome.design.layout
+    on_paper = [run.paper(c) for c in run.corners]
+    middle = tuple(sum(v) / len(on_paper) for v in zip(*on_paper, strict=True))
+
+    def sides(a: XY, b: XY, unit: np.ndarray) -> tuple[XY, ...]:
+        u = unit_between(a, b)
+        if view == "isometric":
+            axes = [run.direction(s * e) for e in np.eye(3) if abs(e @ unit) < 0.5 for s in (1.0, -1.0)]
+        else:
+            n = square_to(u)
+            axes = [n, (-n[0], -n[1])]
+        away = ((a[0] + b[0]) / 2 - middle[0], (a[1] + b[1]) / 2 - middle[1])
+        return tuple(sorted(axes, key=lambda s: -(s[0] * away[0] + s[1] * away[1]) - 0.01 * s[1]))
+
+    def dimension(a: XY, b: XY, metres: float, unit: np.ndarray, path: str, row: int = 0) -> Dimension:
+        lit = bool(path) and path == focus
+        return Dimension(a, b, length_text(metres, units), sides(a, b, unit), path, lit, clear, row)
+
+    if layout.first_guide is not None and len(run.legs) > 1:
+        leg = run.legs[0]
+        place = leg.place(leg.length - float(layout.first_guide))
+        if place is not None:
+            yield dimension(
+                run.paper(place), on_paper[1], float(layout.first_guide), leg.unit, "layout.first_guide"
+            )
+    if room is not None:
+        limit, path = float(outcome.design.limits.room), "limits.room"
+        words = f"room {length_text(limit, units)}"
+        yield Dimension(room[0], room[1], words, ((1.0, 0.0), (-1.0, 0.0)), path, focus == path, clear)
+    paths = leg_paths(layout)
+    lengths = [leg.length for leg in run.legs]
+    for i in sorted(range(len(run.legs)), key=lambda i: lengths[i] if not run.legs[i].broken else math.inf):
+        if paths[i] is not None:
+            yield dimension(on_paper[i], on_paper[i + 1], lengths[i], run.legs[i].unit, paths[i] or "")
+    if "run" in layout.sizes and len(run.legs) > 2:
+        east = np.array([1.0, 0.0, 0.0])
+        across = run.corners[-1] - run.corners[0]
+        far = run.corners[0] + east * across[0]
+        yield dimension(
+            on_paper[0], run.paper(far), float(layout.sizes["run"]), east, "layout.sizes.run", row=1
+        )
+
+
+def leg_paths(layout: Layout) -> list[str | None]:
+    """The field behind the length of each leg: empty if there is none, None if its twin is dimensioned already."""
+    size = "layout.sizes."
+    known: dict[str, list[str | None]] = {
+        "straight": [size + "run"],
+        "L": [size + "run", size + "leg"],
+        "Z": [size + "before", size + "leg", ""],
+        "U": [size + "before", size + "leg", size + "width", None, ""],
+        "raised U": [size + "before", size + "rise", size + "leg", size + "width", None, None, ""],
+    }
+    return known.get(layout.shape) or [f"layout.points.{i + 1}" for i in range(layout.leg_count)]
+
+
+def _support_names(board: Board, run: DrawnRun, layout: Layout, units: UnitSystem, clear: float) -> None:
+    """Names of supports, and the gap of the first guide that has one and of every named support."""
+    gap_said = False
+    for kind, name, leg, distance, gap in _marked(run, layout):
+        place = run.legs[leg].place(distance)
+        u = run.direction(run.legs[leg].unit)
+        said = gap > 0 and kind == "guide" and (bool(name) or not gap_said)
+        if place is None or u == (0.0, 0.0) or not (name or said):
+            continue
+        words = [shortened(name, 14)] if name else []
+        if said:
+            words.append(f"gap {present.text(gap, 'movement', units)}")
+            gap_said = True
+        n = marks.under(u)
+        board.beside(
+            run.paper(place), ", ".join(words), first=(-n[0], -n[1]), size=SMALL,
+            distances=[clear + d for d in (2.8, 4.7, 6.7, 9.2, 12.2)],
+        )
+
+
