@@ -23,6 +23,8 @@ from pipeflex.present import UnitSystem, display
 from pipeflex.steam import ATMOSPHERE, saturation_temperature
 from pipeflex.unit_names import SCALES, Exact, combined, fits, known_unit, meaning, nearest, permitted
 
+__all__ = ["Typed", "ascii_unit", "parse", "parse_range", "si", "spelled"]
+
 _UNLIMITED: Final = {"length", "movement", "force", "moment", "stiffness", "rotational stiffness"}
 """Kinds that may be infinite: a room without limit, an anchor that does not give."""
 
@@ -74,9 +76,7 @@ def parse(text: str, kind: str, *, field: str = "", bare: UnitSystem | None = No
         raise error.prefixed(field) from None
 
 
-def parse_range(
-    text: str, kind: str, *, field: str = "", bare: UnitSystem | None = None
-) -> tuple[Typed, Typed]:
+def parse_range(text: str, kind: str, *, field: str = "", bare: UnitSystem | None = None) -> tuple[Typed, Typed]:
     """A range as text -> its two ends in SI: `5 .. 35 degC`, `5 degC to 95 degF`; one value is both ends.
 
     The unit at the end serves both numbers. Raises as `parse`, and `InputError` where the higher comes first.
@@ -211,12 +211,11 @@ def _scaled(found: Amount, text: str, kind: str) -> Q:
         scale = display(kind, SCALES[unit])
         return value * scale.factor + scale.offset
     exact, side = _sided(unit) if kind == "pressure" else (known_unit(unit), "")
-    near = tuple(f"{written} {spelling}" for spelling in nearest(unit, kind))
-    if exact is None:
-        _refuse(text, kind, f"{permitted(kind)}; {unit!r} is no unit known here", near)
     slipped = unit in SCALES if kind == "temperature change" else kind == "temperature" and unit != "K"
-    if slipped or not fits(exact[1], kind):
-        _refuse(text, kind, f"{permitted(kind)}; {unit} is {meaning(unit, exact[1])}", near)
+    if exact is None or slipped or not fits(exact[1], kind):
+        reason = f"{unit} is {meaning(unit, exact[1])}" if exact else f"{unit!r} is no unit known here"
+        near = tuple(f"{written} {spelling}" for spelling in nearest(unit, kind))
+        _refuse(text, kind, f"{permitted(kind)}; {reason}", near)
     return value * exact[0] - (Q(ATMOSPHERE) if side == "a" else 0)
 
 
@@ -245,15 +244,15 @@ def _possible(exact: Q, text: str, kind: str) -> float:
 
 def _saturation(pressure: str, text: str) -> float:
     """Temperature of steam saturated at a pressure, which must say whether it is gauge or absolute."""
-    permitted = "a saturation pressure such as 33 bar g sat, 450 psig sat or 34 bar a sat"
+    wanted = "a saturation pressure such as 33 bar g sat, 450 psig sat or 34 bar a sat"
     try:
         gauge = _exact(pressure, text, "pressure", None)
     except UnitError:
-        _refuse(text, "temperature", permitted)
+        _refuse(text, "temperature", wanted)
     found = amount(pressure)
     if found and not _sided(found.unit)[1]:
         near = (f"{pressure} g sat", f"{pressure} a sat")
-        _refuse(text, "temperature", f"{permitted}; gauge or absolute?", near)
+        _refuse(text, "temperature", f"{wanted}; gauge or absolute?", near)
     try:
         return float(saturation_temperature(float(gauge + Q(ATMOSPHERE))))
     except InputError as error:
