@@ -48,13 +48,17 @@ class Faults(list[PipeflexError]):
         try:
             yield
         except PipeflexError as error:
-            last = (fault.field.rpartition(".")[2] for fault in error.faults)
-            named = (name if name in entries else entries[0] for name in last)
-            kept = (replace(fault, field=name) for fault, name in zip(error.faults, named, strict=True))
-            self.append(type(error)(*kept))
+            self.append(type(error)(*(_under(entries, fault) for fault in error.faults)))
 
     def tell(self) -> None:
         refuse_all(self)
+
+
+def _under(entries: tuple[str, ...], fault: Fault) -> Fault:
+    name = fault.field.rpartition(".")[2]
+    if name in entries:
+        return replace(fault, field=name)
+    return replace(fault, field=entries[0], allowed=f"for {fault.field}, {fault.allowed}")
 
 
 @dataclass(frozen=True, slots=True)
@@ -156,7 +160,7 @@ def built(cls: type[R], given: Any, forms: Forms, **known: Any) -> R:
 def only_known(given: Table, known: Collection[str]) -> None:
     """Refuse entries that a table does not have, and name the nearest that it has."""
     faults = [
-        Fault(key, said(value), "an entry of this table", near=tuple(get_close_matches(key, known, 2, 0.5) or known))
+        Fault(key, said(value), "an entry of this table", near=tuple(get_close_matches(key, known, 2) or known))
         for key, value in given.items()
         if key not in known
     ]

@@ -15,7 +15,7 @@ from pipeflex.data.pipes import ELBOWS, dimensions, elbow
 from pipeflex.errors import Fault, InputError, MissingInput, PipeflexError, TableError, UnitError
 from pipeflex.files.record_form import Faults, Form, Forms, Table, built, entry, only_known, said, table, taken
 from pipeflex.model.design import Design
-from pipeflex.model.duty import Case, Confirmed, Duty
+from pipeflex.model.duty import Case, Confirmed, Duty, PipingCode
 from pipeflex.model.fields import Names, Number, Text
 from pipeflex.model.layout import Corner, Layout, Segment
 from pipeflex.model.pipe import Pipe
@@ -34,13 +34,24 @@ def forms_for(design: Design) -> Forms:
 def forms_in(given: Table) -> Forms:
     """The forms to read a design with; what they need of it is taken as far as it can be read."""
     pipe, confirmed = given.get("pipe"), ()
-    size = pipe.get("size", "") if isinstance(pipe, dict) else ""
     with suppress(PipeflexError):
         confirmed = taken(given.get("confirmed", []), dict(Design.specs())["confirmed"], "", CONFIRMED)
-    return _forms(str(size), confirmed)
+    return _forms(_size_in(pipe) if isinstance(pipe, dict) else None, confirmed)
 
 
-def _forms(size: str, confirmed: Said) -> Forms:
+def _size_in(pipe: Table) -> str | None:
+    """The size that a pipe is given by; None where the reading of the pipe itself tells that it is at fault."""
+    size = str(pipe.get("size", ""))
+    if "outside_diameter" in pipe or "wall" in pipe:
+        return size
+    try:
+        dimensions(size, str(pipe.get("schedule", "")))
+    except TableError as error:
+        return None if error.faults[0].field == "pipe.size" else size
+    return size
+
+
+def _forms(size: str | None, confirmed: Said) -> Forms:
     return {
         Design: Form(_fold_design, _unfold_design, ("code",), ("code",)),
         Pipe: Form(
@@ -78,15 +89,23 @@ def _fold_design(design: Design, made: Table) -> Table:
 
 
 def _unfold_design(given: Table, faults: Faults) -> Table:
-    entries, found = given.get("code", {}), None
+    found = None
     with faults.at("code"):
-        if not isinstance(entries, dict):
-            raise InputError(Fault("", said(entries), allowed="a table with a key"))
-        with faults.at():
-            only_known(entries, ("key",))
-        with faults.of("key"):
-            found = code(taken(entries.get("key", ""), Text(required=True), "key", {}))
+        found = _code(given.get("code", {}))
     return {"code": found}
+
+
+def _code(given: Any) -> PipingCode:
+    if not isinstance(given, dict):
+        raise InputError(Fault("", said(given), allowed="a table with a key"))
+    faults, found = Faults(), None
+    with faults.at():
+        only_known(given, ("key",))
+    with faults.of("key"):
+        found = code(taken(given.get("key", ""), Text(), "key", {}))
+    faults.tell()
+    assert found is not None
+    return found
 
 
 def _as_held(look_up: Any, own: Any, path: str) -> None:
@@ -118,13 +137,12 @@ def _fold_pipe(confirmed: Said, pipe: Pipe, made: Table) -> Table:
 def _unfold_pipe(confirmed: Said, given: Table, faults: Faults) -> Table:
     values: Table = {"materials": ()}
     with faults.of("material", "expansion"):
-        keys = given.get("material")
-        if isinstance(keys, list):
-            keys = taken(keys, Names(), "material", {})
-        else:
-            keys = (taken(keys if keys is not None else "", Text(required=True), "material", {}),)
+        if "material" not in given:
+            raise MissingInput(Fault("material", None, allowed="the key of a material of the tables"))
+        several = isinstance(given["material"], list)
+        keys = taken(given["material"], Names() if several else Text(), "material", {})
         expansion = taken(given.get("expansion", "current"), Text(), "expansion", {})
-        values["materials"] = tuple(material(key, expansion, confirmed) for key in keys)
+        values["materials"] = tuple(material(key, expansion, confirmed) for key in (keys if several else (keys,)))
     if "outside_diameter" in given or "wall" in given:
         return values
     values |= {"outside_diameter": None, "wall": None}
@@ -161,7 +179,7 @@ def _fold_layout(layout: Layout, made: Table) -> Table:
     return {("corner" if key == "corners" else key): v for key, v in made.items()} | {"corner": made["corners"][0]}
 
 
-def _unfold_layout(size: str, given: Table, faults: Faults) -> Table:
+def _unfold_layout(size: str | None, given: Table, faults: Faults) -> Table:
     if "corner" not in given:
         return {}
     corners: tuple[Corner, ...] = ()
@@ -172,21 +190,23 @@ def _unfold_layout(size: str, given: Table, faults: Faults) -> Table:
     return {"corners": corners}
 
 
-def _fold_corner(size: str, corner: Corner, made: Table) -> Table:
+def _fold_corner(size: str | None, corner: Corner, made: Table) -> Table:
     for kind in ELBOWS:
         with suppress(TableError):
-            found = elbow(size, kind)
+            found = elbow(size or "", kind)
             if (corner.radius, corner.radius_from) == (found.radius, found.radius_from):
                 del made["radius_from"]
                 return {**made, "radius": kind}
     return made
 
 
-def _unfold_corner(size: str, given: Table, faults: Faults) -> Table:
+def _unfold_corner(size: str | None, given: Table, faults: Faults) -> Table:
     kind = given.get("radius")
     if not (isinstance(kind, str) and (kind in ELBOWS or _WORD.match(kind))):
         return {}
-    values: Table = {"radius": None}
+    values: Table = {"radius": 1.0}  # stands in where the fault is told, so that no other follows from it
+    if size is None:
+        return values
     with faults.of("radius"):
         if not size:
             raise InputError(Fault("radius", kind, allowed="a radius such as 305 mm: an elbow needs the pipe's size"))
