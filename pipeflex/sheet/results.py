@@ -1,0 +1,151 @@
+"""Checks, loads, movements, ladder and turning values as rows of text."""
+
+import math
+from collections.abc import Sequence
+from dataclasses import dataclass
+
+import numpy as np
+
+from pipeflex import present
+from pipeflex.model.outcome import Check, Ladder, Load, Outcome, Turn
+from pipeflex.model.words import Judgement
+from pipeflex.present import UNIT_SYSTEMS, UnitSystem
+
+@dataclass(frozen=True, slots=True)
+class CheckRow:
+    """One check: demand and limit with their unit, ratio, state word, reason or note, place and states."""
+
+    title: str
+    demand: str
+    limit: str
+    ratio: str
+    judgement: Judgement
+    reason: str
+    where: str
+
+
+def checks(outcome: Outcome, units: UnitSystem = "metric") -> tuple[CheckRow, ...]:
+    """The checks of a single row."""
+    return tuple(_check(c, units) for c in outcome.checks)
+
+
+def _check(check: Check, units: UnitSystem) -> CheckRow:
+    limit, demand = float(check.limit), float(check.demand)
+    known = not check.unjudged
+    return CheckRow(
+        title=check.title,
+        demand=present.text(demand, check.kind, units) if known else "",
+        limit=present.text(limit, check.kind, units) if math.isfinite(limit) else "none given",
+        ratio=present.percent(float(check.ratio)) if check.judged else "",
+        judgement=check.judgement,
+        reason="; ".join(t for t in (check.reason, check.note) if t),
+        where=", ".join(t for t in (check.where, check.states) if t) if known else "",
+    )
+
+
+@dataclass(frozen=True, slots=True)
+class LoadRow:
+    """One load in one state: direction in words, and thermal part, friction and sum in each unit system.
+
+    The parts are counted along the direction of the sum.
+    """
+
+    point: str
+    direction: str
+    state: str
+    parts: tuple[tuple[str, str, str], ...]
+    greatest: bool
+
+
+def loads(outcome: Outcome) -> tuple[LoadRow, ...]:
+    """All loads of a single row in every state, the greatest of each marked."""
+    return tuple(row for load in outcome.loads for row in _load(load))
+
+
+def _load(load: Load) -> list[LoadRow]:
+    worst = int(load.worst)
+    thermal, friction = np.atleast_1d(load.thermal), np.atleast_1d(load.friction)
+    rows = []
+    for i, state in enumerate(load.states):
+        total = float(thermal[i] + friction[i])
+        way = -1.0 if total < 0 else 1.0
+        numbers = (way * float(thermal[i]), way * float(friction[i]), abs(total))
+        parts = tuple(tuple(present.text(v, load.kind, u) for v in numbers) for u in UNIT_SYSTEMS)
+        direction = f"{load.name}, {load.toward(total)}"
+        rows.append(LoadRow(load.point, direction, state, parts, i == worst))  # type: ignore[arg-type]
+    return rows
+
+
+def load_terms(outcome: Outcome, units: UnitSystem = "metric") -> str:
+    """What every load table must say."""
+    friction = present.number(float(outcome.design.layout.friction), "ratio", units, 2)
+    return (
+        "Working loads, unfactored, of the pipe on the steel (or equipment). "
+        f"Friction factor {friction}; thermal part and friction apart, in each state of the line."
+    )
+
+
+@dataclass(frozen=True, slots=True)
+class MovementRow:
+    """How far a point moves from its installed place, in one state."""
+
+    point: str
+    direction: str
+    state: str
+    values: tuple[str, ...]
+
+
+def movements(outcome: Outcome) -> tuple[MovementRow, ...]:
+    """The greatest movement of each point of a single row."""
+    rows = []
+    for m in outcome.movements:
+        values = np.atleast_1d(m.value)
+        i = int(np.abs(values).argmax())
+        value = float(values[i])
+        texts = tuple(present.text(abs(value), "movement", u) for u in UNIT_SYSTEMS)
+        rows.append(MovementRow(m.point, m.positive if value >= 0 else m.negative, m.states[i], texts))
+    return tuple(rows)
+
+
+@dataclass(frozen=True, slots=True)
+class RungRow:
+    """One method of the ladder; `chosen` is the one that answers, `reference` a comparison without rank."""
+
+    title: str
+    standing: str
+    ratio: str
+    leg: str
+    anchor: str
+    remark: str
+    chosen: bool
+    reference: bool
+
+
+def rungs(ladder: Ladder, outcome: Outcome, units: UnitSystem = "metric") -> tuple[RungRow, ...]:
+    """The ladder as rows."""
+
+    def shown(value: float, kind: str) -> str:
+        return present.text(value, kind, units) if math.isfinite(value) else "\u2013"
+
+    return tuple(
+        RungRow(
+            title=r.title,
+            standing="comparison" if r.reference else str(r.standing),
+            ratio=present.percent(float(r.ratio)) if math.isfinite(float(r.ratio)) else "\u2013",
+            leg=shown(float(r.leg), "length"),
+            anchor=shown(float(r.anchor), "force"),
+            remark="; ".join(t for t in (r.reason, r.unsafe) if t),
+            chosen=r.key == outcome.method,
+            reference=r.reference,
+        )
+        for r in ladder.rungs
+    )
+
+
+def turns(found: Sequence[Turn], units: UnitSystem = "metric") -> tuple[tuple[str, str, str], ...]:
+    """Label, present value and turning value of each input that turns the answer alone."""
+    return tuple(
+        (t.label, present.text(float(t.present), t.kind, units), present.text(float(t.turns), t.kind, units))
+        for t in found
+        if math.isfinite(float(t.turns))
+    )
