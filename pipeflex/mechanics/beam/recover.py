@@ -1,0 +1,259 @@
+"""From the wrenches of an answer: moments in local axes, movements and rotations anywhere, equilibrium."""
+
+from collections.abc import Sequence
+from dataclasses import dataclass
+
+import numpy as np
+
+from pipeflex.mechanics.beam.compliance import UP, Array, Properties, Shape, cross, dot
+from pipeflex.mechanics.beam.elements import Elements, chunks, elements, members, of_shape, station_points
+from pipeflex.mechanics.beam.parts import States
+from pipeflex.mechanics.beam.run import Run
+from pipeflex.mechanics.beam.sweep import Answer, free_twists, point_wrenches, twists
+
+POINTS = ("start", "middle", "end")
+
+
+@dataclass(frozen=True, slots=True, eq=False)
+class Moments:
+    """Moments and axial force at the start, middle and end of every element, (state, point, element, row).
+
+    in_plane, out_plane : bending in and out of the plane of the element's bend [N*m]; for a straight the plane of
+        the corner before it (at its end, of the corner after it).
+    torsion : [N*m]; axial : tension positive [N].
+    fraction : (state, element, row), where the middle is: one half, or on a straight that carries weight the place
+        where its own weight makes the vertical bending moment greatest.
+    """
+
+    in_plane: Array
+    out_plane: Array
+    torsion: Array
+    axial: Array
+    fraction: Array
+
+    def resultant(self) -> Array:
+        """All three moments together [N*m]."""
+        return np.sqrt(self.in_plane**2 + self.out_plane**2 + self.torsion**2)
+
+
+@dataclass(frozen=True, slots=True, eq=False)
+class Movements:
+    """Movement and rotation along the run.
+
+    position : (3, place, row) [m], in the coordinates of the corners.
+    movement : (state, 3, place, row) [m]; rotation : (state, 3, place, row) [rad], global axes.
+    """
+
+    position: Array
+    movement: Array
+    rotation: Array
+
+
+def moments(answer: Answer) -> Moments:
+    """Moments in local axes along the run."""
+    parts = [_moments(answer, elements(answer.run, rows)) for rows in chunks(answer.run)]
+    return Moments(*(np.concatenate(values, axis=-1) for values in zip(*parts, strict=True)))
+
+
+def _factor(states: States, count: int) -> Array:
+    return np.broadcast_to(np.asarray(states.weight, dtype=float), (count,))[:, None, None]
+
+
+def _moments(answer: Answer, made: Elements) -> tuple[Array, Array, Array, Array, Array]:
+    run, shape = answer.run, made.shape
+    wrench = answer.wrench[..., made.rows].swapaxes(0, 1)
+    force, about = wrench[:3], wrench[3:]
+    _, count, n, rows = force.shape
+    weight = _factor(answer.states, count) * made.prop.weight
+    length, along, inward = shape.length, shape.along, shape.inward
+    half = 0.5 * shape.angle
+    sine, cosine = np.sin(half), np.cos(half)
+    middle = np.full((count, n, rows), 0.5)
+    weighs = bool(weight.any())
+    if weighs:
+        middle[:, made.straight] = _peak(
+            force[..., made.straight, :], weight[:, made.straight], along, length, made
+        )
+    end_tan, end_in = np.empty_like(along), np.empty_like(along)
+    end_tan[:, made.straight] = along[:, made.straight]
+    end_in[:, made.straight] = _after(run, made)
+    chord = 2.0 * shape.radius * sine
+    mid_tan, mid_in = cosine * along + sine * inward, cosine * inward - sine * along
+    bent = made.bent
+    if len(bent):
+        c, s = np.cos(shape.angle[bent]), np.sin(shape.angle[bent])
+        end_tan[:, bent] = c * along[:, bent] + s * inward[:, bent]
+        end_in[:, bent] = c * inward[:, bent] - s * along[:, bent]
+    end_point = shape.start + length * along
+    end_point[:, bent] = shape.start[:, bent] + chord[bent] * mid_tan[:, bent]
+    mid_point = shape.start[:, None] + (middle * length) * along[:, None]
+    if len(bent):
+        bow = shape.radius[bent] * (1.0 - cosine[bent])
+        mid_point[:, :, bent] = (
+            shape.start[:, bent] + shape.radius[bent] * sine[bent] * along[:, bent] + bow * inward[:, bent]
+        )[:, None]
+    out = [np.empty((count, 3, n, rows)) for _ in range(4)]
+    places = (
+        (shape.start[:, None], along, inward, np.zeros(())),
+        (mid_point, mid_tan, mid_in, middle),
+        (end_point[:, None], end_tan, end_in, np.ones(())),
+    )
+    for i, (point, tangent, inner, fraction) in enumerate(places):
+        f, m = force, about
+        if weighs and i < 2:
+            beyond_f, beyond_m = _beyond(made, weight, fraction)
+            f, m = f + beyond_f, m + beyond_m
+        m = m - cross(point, f)
+        out[0][:, i] = dot(m, cross(tangent, inner)[:, None])
+        out[1][:, i] = dot(m, inner[:, None])
+        out[2][:, i] = dot(m, tangent[:, None])
+        out[3][:, i] = dot(f, tangent[:, None])
+    return out[0], out[1], out[2], out[3], middle
+
+
+def _peak(force: Array, weight: Array, along: Array, length: Array, made: Elements) -> Array:
+    """Fraction of each straight at which the shear in the vertical plane vanishes, within the straight."""
+    tau, size = along[:, made.straight], length[made.straight]
+    slope = 1.0 - tau[UP] ** 2
+    shear = force[UP] - dot(force, tau[:, None]) * tau[UP]
+    carried = weight * slope * size
+    with np.errstate(divide="ignore", invalid="ignore"):
+        place = 1.0 - shear / carried
+    return np.clip(np.where(carried > 0, place, 0.5), 0.0, 1.0)
+
+
+def _after(run: Run, made: Elements) -> Array:
+    """For each straight a vector in the plane of the corner after it (the last one, if any), square to it."""
+    leg = run.plan.leg[made.straight]
+    if run.bends == 0:
+        return made.shape.inward[:, made.straight]
+    last = leg >= run.bends
+    after = run.inward[:, np.minimum(leg, run.bends - 1), made.rows]
+    return np.where(last[:, None], made.shape.inward[:, made.straight], after)
+
+
+def _beyond(made: Elements, weight: Array, fraction: Array) -> tuple[Array, Array]:
+    """Force and moment about O of an element's own weight beyond a fraction of it, (3, state, element, row)."""
+    shape = made.shape
+    beyond = np.broadcast_to(1.0 - fraction, weight.shape)
+    force = np.zeros((3, *weight.shape))
+    force[UP] = -weight * shape.length * beyond
+    centre = shape.start[:, None] + (0.5 * (1.0 + fraction) * shape.length) * shape.along[:, None]
+    centre = np.broadcast_to(centre, force.shape).copy()
+    if len(made.bent):
+        b = made.bent
+        spread = 0.5 * shape.angle[b] * beyond[:, b]
+        place = shape.angle[b] - spread
+        ring = shape.radius[b] * np.sinc(spread / np.pi)
+        centre[:, :, b] = (
+            shape.start[:, None, b]
+            + shape.radius[b] * shape.inward[:, None, b]
+            + ring * (np.sin(place) * shape.along[:, None, b] - np.cos(place) * shape.inward[:, None, b])
+        )
+    return force, cross(centre, force)
+
+
+def _twists(answer: Answer, made: Elements) -> Array:
+    """Twist about O at every station, (state, 6, station, row)."""
+    member = members(made, answer.run)
+    free = free_twists(answer.run, answer.states, made, member)[0]
+    return twists(member.compliance, free, answer.wrench[..., made.rows], answer.start[..., made.rows])
+
+
+def _moved(twist: Array, point: Array) -> Array:
+    """Movement of the points (3, place, row) by twists (state, 6, place, row)."""
+    rotation = twist[:, 3:].swapaxes(0, 1)
+    return twist[:, :3] + cross(rotation, point[:, None]).swapaxes(0, 1)
+
+
+def support_movements(answer: Answer) -> Movements:
+    """Movement at every support, in their order; places are the supports."""
+    parts = []
+    for rows in chunks(answer.run):
+        made = elements(answer.run, rows)
+        station = answer.run.plan.support_station
+        point, twist = station_points(made, station), _twists(answer, made)[:, :, station]
+        parts.append((point + answer.run.origin[:, None, rows], _moved(twist, point), twist[:, 3:]))
+    return Movements(*(np.concatenate(values, axis=-1) for values in zip(*parts, strict=True)))
+
+
+def movements(answer: Answer, fractions: Sequence[float] = (0.0, 0.5, 1.0)) -> Movements:
+    """Movement at fractions of every element; places run along the run, element by element.
+
+    Parameters
+    ----------
+    answer : of `linear` or `settle`.
+    fractions : of the length or angle of each element, 0 .. 1, the same for all.
+    """
+    parts = [_movements(answer, elements(answer.run, rows), fractions) for rows in chunks(answer.run)]
+    return Movements(*(np.concatenate(values, axis=-1) for values in zip(*parts, strict=True)))
+
+
+def _movements(answer: Answer, made: Elements, fractions: Sequence[float]) -> tuple[Array, Array, Array]:
+    run, shape = answer.run, made.shape
+    start = _twists(answer, made)[:, :, :-1]
+    wrench = answer.wrench[..., made.rows]
+    count = len(wrench)
+    weight = _factor(answer.states, count) * made.prop.weight
+    points, moved, turned = [], [], []
+    for fraction in fractions:
+        part = _part(made, fraction)
+        member = of_shape(part, run)
+        force, moment = _beyond(made, weight, np.full(weight.shape, fraction))
+        there = wrench + np.concatenate([force, moment]).swapaxes(0, 1)
+        twist = (
+            start
+            + free_twists(run, answer.states, part, member)[0]
+            + np.einsum("ijer,sjer->sier", member.compliance, there)
+        )
+        point = shape.start + member.chord
+        points.append(point + run.origin[:, None, made.rows])
+        moved.append(_moved(twist, point))
+        turned.append(twist[:, 3:])
+    rows = shape.length.shape[1]
+    return (
+        np.stack(points, axis=2).reshape(3, -1, rows),
+        np.stack(moved, axis=3).reshape(count, 3, -1, rows),
+        np.stack(turned, axis=3).reshape(count, 3, -1, rows),
+    )
+
+
+def _part(made: Elements, fraction: float) -> Elements:
+    """The elements from their start to a fraction of them."""
+    shape = made.shape
+    part = Shape(
+        shape.start, shape.along, shape.inward, fraction * shape.length, shape.radius, fraction * shape.angle
+    )
+    return Elements(made.rows, part, Properties(*made.prop), made.straight, made.bent, made.end)
+
+
+def residual(answer: Answer) -> Array:
+    """Force and moment (about the first corner) left over on the whole run, (state, 6, row) [N, N*m].
+
+    Sums what the ends and supports receive and what weighs; the friction forces of `settle` included.
+    """
+    run = answer.run
+    parts = []
+    for rows in chunks(run):
+        made = elements(run, rows)
+        count = len(answer.wrench)
+        factor = _factor(answer.states, count)
+        total = factor * members(made, run).load.sum(axis=1)
+        if run.weights:
+            total = total + factor * point_wrenches(run, made).sum(axis=1)
+        total = total - _reactions(answer, made)
+        parts.append(total)
+    return np.concatenate(parts, axis=-1)
+
+
+def _reactions(answer: Answer, made: Elements) -> Array:
+    """Wrench of the pipe on all ends and supports about O, (state, 6, row)."""
+    a, b = answer.end_a[..., made.rows], answer.end_b[..., made.rows]
+    arm = cross(made.end[:, None], b[:, :3].swapaxes(0, 1))
+    b = np.concatenate([b[:, :3], b[:, 3:] + arm.swapaxes(0, 1)], axis=1)
+    on_supports = answer.support_force[..., made.rows]
+    if not on_supports.shape[2]:
+        return a + b
+    point = station_points(made, answer.run.plan.support_station)
+    turning = cross(point[:, None], on_supports.swapaxes(0, 1)).swapaxes(0, 1)
+    return a + b + np.concatenate([on_supports, turning], axis=1).sum(axis=2)
