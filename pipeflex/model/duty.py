@@ -8,6 +8,7 @@ import numpy as np
 from pipeflex.errors import Fault, InputError, MissingInput, refuse
 from pipeflex.model.fields import FrozenMap, anything, flag, many, number, pick_of, text, vector
 from pipeflex.model.record import Record, record
+from pipeflex.steam import ATMOSPHERE
 from pipeflex.trace import Rule
 
 
@@ -17,7 +18,7 @@ class Case(Record):
 
     name: str = text(required=True, longest=40)
     temperature: float = number("temperature", above=0, label="Metal temperature")
-    pressure: float = number("pressure", default=0.0, label="Pressure")
+    pressure: float = number("pressure", at_least=-ATMOSPHERE, at_most=1e9, default=0.0, label="Pressure")
     reason: str = text(default="")
     contents_density: float | None = number("density", at_least=0, optional=True, default=None)
     first_end_movement: tuple[float, ...] = vector("movement", 3, default=(0.0,) * 3)
@@ -52,7 +53,7 @@ class Duty(Record):
     unused_sustained: bool = flag(label="eq. (1b), with the unused sustained stress added", default=False)
     pressure_elongation: bool = flag(label="Count pressure elongation", default=False)
     rule_stress: float | None = number(
-        "stress", above=0, optional=True, label="Stress of the developed-length rule", default=None
+        "stress", at_least=1e5, at_most=1e10, optional=True, label="Stress of the developed-length rule", default=None
     )
 
     def check(self) -> None:
@@ -77,13 +78,13 @@ class Duty(Record):
 class Limits(Record):
     """What site and owner allow."""
 
-    room: float = number("length", above=0, unlimited=True, label="Room", default=np.inf)
+    room: float = number("length", at_least=1e-3, unlimited=True, label="Room", default=np.inf)
     shoe_length: float = number("length", above=0, default=0.3, label="Shoe", basis="common practice")
-    shoe_alarm: float = number("movement", above=0, default=0.1, label="Movement alarm", basis="common practice")
+    shoe_alarm: float = number("movement", at_least=1e-4, default=0.1, label="Movement alarm", basis="common practice")
     shoe_stop: float = number(
-        "movement", above=0, default=0.15, label="Greatest movement at a shoe", basis="common practice"
+        "movement", at_least=1e-4, default=0.15, label="Greatest movement at a shoe", basis="common practice"
     )
-    guide_limit: float = number("force", above=0, unlimited=True, label="Guide can take", default=np.inf)
+    guide_limit: float = number("force", at_least=1, unlimited=True, label="Guide can take", default=np.inf)
     target: float = number("ratio", above=0, at_most=1, default=0.80, label="Target of a fit", basis="common practice")
     least_anchor: float = number("force", at_least=0, default=2000.0, basis="common practice")
 
@@ -143,6 +144,8 @@ class PipingCode(Record):
     """Rules of each kind of corner: flexibility and stress intensification."""
     expansion_stress: Clauses = anything(default=())
     sustained_stress: Clauses = anything(default=())
+    cold_spring: Clauses = anything(default=())
+    """Greatest reactions hot and cold of a cold-sprung run between two anchors with nothing between."""
     severe_cyclic: Callable[..., Any] | None = anything(default=None)
     modulus_for_range: str = pick_of("at 21 degC", "hot", default="at 21 degC")
     constants: str = pick_of("SI", "U.S.", default="SI")

@@ -137,17 +137,18 @@ class Flag:
 
 @dataclass(frozen=True, slots=True)
 class Whole:
-    """A whole number (a leg, a corner, a member of a list), or an array of one a row."""
+    """A whole number (a leg, a corner); with `columnar` also an array of one a row (a member of a list)."""
 
     at_least: int = 0
     label: str = ""
     optional: bool = False
+    columnar: bool = False
 
     def take(self, value: Any, name: str) -> Any:
         if value is None and self.optional:
             return None
         number = np.asarray(value)
-        if isinstance(value, bool) or number.dtype.kind not in "iu":
+        if isinstance(value, bool) or number.dtype.kind not in "iu" or (number.ndim and not self.columnar):
             raise InputError(Fault(name, str(value)[:60], allowed="a whole number"))
         refuse(InputError, (number < self.at_least, Fault(name, number, f"at least {self.at_least}")))
         if number.ndim == 0:
@@ -340,9 +341,11 @@ def flag(*, default: Any = False, label: str = "", help: str = "") -> Any:
     return _field(Flag(label, help), default)
 
 
-def whole(*, at_least: int = 0, default: Any = MISSING, label: str = "", optional: bool = False) -> Any:
-    """Declare a field for whole numbers."""
-    return _field(Whole(at_least, label, optional), None if optional and default is MISSING else default)
+def whole(
+    *, at_least: int = 0, default: Any = MISSING, label: str = "", optional: bool = False, columnar: bool = False
+) -> Any:
+    """Declare a field for whole numbers: one for all rows, or with `columnar` one a row."""
+    return _field(Whole(at_least, label, optional, columnar), None if optional and default is MISSING else default)
 
 
 def sub(kind: Callable[[], type], *, optional: bool = False, factory: Any = MISSING) -> Any:
@@ -360,9 +363,9 @@ def names(*, default: Any = (), label: str = "") -> Any:
     return _field(Names(label), default)
 
 
-def numbers(kind: str, *, above: float | None = None, at_least: float | None = None, label: str = "") -> Any:
+def numbers(kind: str, *, at_least: float | None = None, at_most: float | None = None, label: str = "") -> Any:
     """Declare a field that holds named numbers."""
-    return _field(Numbers(kind, Limits(above, at_least), label), MISSING)
+    return _field(Numbers(kind, Limits(at_least=at_least, at_most=at_most), label), MISSING)
 
 
 def vector(

@@ -18,6 +18,11 @@ CORNER_KINDS: Final = ("bend", "square", "closely spaced mitre", "widely spaced 
                        "threaded", "brazed")  # fmt: skip
 SUPPORT_KINDS: Final = ("guide", "rest", "line stop", "spring")
 
+SHORTEST: Final = 1e-3
+"""Least length of a leg [m]."""
+FARTHEST: Final = 1e5
+"""Greatest length and distance [m]."""
+
 
 @record
 class Corner(Record):
@@ -58,7 +63,7 @@ class End(Record):
     axis: tuple[float, ...] = vector("ratio", 3, default=(1.0, 0.0, 0.0))
     force_limits: tuple[float, ...] = vector("force", 3, default=(np.inf,) * 3, at_least=0, unlimited=True)
     moment_limits: tuple[float, ...] = vector("moment", 3, default=(np.inf,) * 3, at_least=0, unlimited=True)
-    anchor_limit: float = number("force", above=0, unlimited=True, label="Anchor can take", default=np.inf)
+    anchor_limit: float = number("force", at_least=1, unlimited=True, label="Anchor can take", default=np.inf)
 
 
 @record
@@ -81,7 +86,7 @@ class Weight(Record):
     """A concentrated mass (a valve, a flange pair) at a distance along one leg."""
 
     name: str = text(default="")
-    mass: float = number("mass", above=0)
+    mass: float = number("mass", above=0, at_most=1e6)
     leg: int = whole(at_least=1)
     distance: float = number("length", at_least=0)
 
@@ -111,9 +116,9 @@ class Segment(Record):
 class Point(Record):
     """One corner or end of a run given by its points, along, across and up from any origin."""
 
-    along: float = number("length", default=0.0)
-    across: float = number("length", default=0.0)
-    up: float = number("length", default=0.0)
+    along: float = number("length", at_least=-FARTHEST, at_most=FARTHEST, default=0.0)
+    across: float = number("length", at_least=-FARTHEST, at_most=FARTHEST, default=0.0)
+    up: float = number("length", at_least=-FARTHEST, at_most=FARTHEST, default=0.0)
 
 
 @dataclass(frozen=True, slots=True)
@@ -195,7 +200,7 @@ class Layout(Record):
     """
 
     shape: str = pick_of(*SHAPES, label="Shape")
-    sizes: FrozenMap = numbers("length", above=0, label="Sizes")
+    sizes: FrozenMap = numbers("length", at_least=SHORTEST, at_most=FARTHEST, label="Sizes")
     points: tuple[Point, ...] = many(lambda: Point)
     corners: tuple[Corner, ...] = many(lambda: Corner)
     ends: tuple[End, ...] = many(lambda: End, factory=lambda: (End(name="west"), End(name="east")))
@@ -204,8 +209,8 @@ class Layout(Record):
         "movement", at_least=0, at_most=0.1, default=0.003, label="Guide gap a side", basis="common practice"
     )
     guide_stiffness: float = number("stiffness", above=0, unlimited=True, label="Guide stiffness", default=np.inf)
-    guide_spacing: float | None = number("length", above=0, optional=True, label="Between guides", default=None)
-    rest_spacing: float | None = number("length", above=0, optional=True, label="Between rests", default=None)
+    guide_spacing: float | None = number("length", at_least=0.01, optional=True, label="Between guides", default=None)
+    rest_spacing: float | None = number("length", at_least=0.01, optional=True, label="Between rests", default=None)
     friction: float = number(
         "ratio",
         at_least=0,
@@ -244,6 +249,7 @@ class Layout(Record):
             ),
         )
         lengths = self.leg_lengths()
+        self._check_legs(lengths)
         self._check_places(lengths)
 
     def _check_sizes(self) -> None:
@@ -271,6 +277,15 @@ class Layout(Record):
                 Fault("sizes.before", before, "within the run", "length", low=0.0, high=float(np.ravel(beyond)[0])),
             ),
         )
+
+    def _check_legs(self, lengths: np.ndarray) -> None:
+        faults = []
+        for i, length in enumerate(lengths):
+            field, words = "sizes", f"sizes that leave leg {i + 1} a length"
+            if self.shape == "points":
+                field, words = f"points.{i + 1}", "a point away from the one before"
+            faults.append((length < SHORTEST, Fault(field, length, words, "length", low=SHORTEST)))
+        refuse(InputError, *faults)
 
     def _check_places(self, lengths: np.ndarray) -> None:
         faults = []

@@ -78,10 +78,10 @@ class Pipe(Record):
     contents_density [kg/m3]: of what is in the line when it works.
     """
 
-    outside_diameter: float = number("pipe dimension", above=0, at_most=5.0, label="Outside diameter")
-    wall: float = number("pipe dimension", above=0, label="Wall")
+    outside_diameter: float = number("pipe dimension", at_least=1e-3, at_most=5.0, label="Outside diameter")
+    wall: float = number("pipe dimension", at_least=1e-5, label="Wall")
     materials: tuple[Material, ...] = many(lambda: Material, columnar=False)
-    material_row: int = whole(default=0)
+    material_row: int = whole(default=0, columnar=True)
     size: str = text(label="Size", help="DN 200, NPS 8, 8 in, or a tube size", default="")
     schedule: str = text(label="Wall", help="Sch 40, STD, 10S, or a tube type", default="")
     dimensions_from: str = text(longest=300, default="")

@@ -2,7 +2,7 @@
 
 from collections.abc import Callable, Iterator
 from dataclasses import dataclass, fields
-from typing import Any, ClassVar, Final, Self, TypeVar, dataclass_transform
+from typing import Any, Final, Self, TypeVar, dataclass_transform
 
 import numpy as np
 
@@ -36,7 +36,6 @@ class Record:
     """Base of the records of a design. Use `record` as decorator, and the field declarers for fields."""
 
     __slots__ = ()
-    _numeric: ClassVar[tuple[type, ...]] = (Number, Numbers, Vector, Whole)
 
     def __post_init__(self) -> None:
         errors = []
@@ -88,7 +87,7 @@ class Record:
         changes: dict[str, Any] = {}
         for name, spec in self.specs():
             value = getattr(self, name)
-            if isinstance(spec, self._numeric):
+            if isinstance(spec, (Number, Numbers, Vector)) or (isinstance(spec, Whole) and spec.columnar):
                 changes[name] = _map_value(change, value)
             elif isinstance(spec, Sub) and spec.columnar and value is not None:
                 changes[name] = (
