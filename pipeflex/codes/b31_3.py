@@ -9,13 +9,7 @@ from typing import Any, Final
 
 import numpy as np
 
-from pipeflex.codes.b31_3_flexibility import (
-    BEND_FACTORS,
-    axial_stress,
-    computed_range,
-    resultant_bending,
-    torsional_stress,
-)
+from pipeflex.codes.b31_3_flexibility import BEND_FACTORS, COLD_SPRING, EXPANSION_STRESS, FIXED, SUSTAINED_STRESS
 from pipeflex.model.duty import PipingCode
 from pipeflex.model.fields import FrozenMap
 from pipeflex.trace import Choice, formula
@@ -140,10 +134,18 @@ def editions() -> tuple[PipingCode, ...]:
         allowable_range_with_sustained=(range_factor_2018, *_CAPS, with_sustained),
         screening=(screening_value, greatest_screening_value),
         bend_factors=FrozenMap(BEND_FACTORS),
-        expansion_stress=(axial_stress, resultant_bending, torsional_stress, computed_range),
+        expansion_stress=EXPANSION_STRESS,
+        sustained_stress=SUSTAINED_STRESS,
+        cold_spring=COLD_SPRING,
         severe_cyclic=severe_cyclic,
         remarks=(_CONFIRM.format("ASME B31.3-2018"),),
-        options=FrozenMap({"ferrous_strength": 517.2e6, "ferrous_temperature": 371 + 273.15}),
+        options=FrozenMap(
+            {
+                "ferrous_strength": 517.2e6,
+                "ferrous_temperature": 371 + 273.15,
+                **{f"i {kind}": i for kind, i in FIXED.items()},
+            }
+        ),
     )
     b31_3_2022 = dataclasses.replace(
         b31_3_2018,

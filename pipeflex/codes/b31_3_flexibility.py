@@ -12,6 +12,7 @@ from pipeflex.formulas import Rule, formula
 
 _D300: Final = "ASME B31.3-2018 Table D300"
 _319_4: Final = "ASME B31.3-2018 para. 319.4.4"
+_320_2: Final = "ASME B31.3-2018 para. 320.2"
 _319_5: Final = "ASME B31.3-2018 para. 319.5.1"
 
 MOST_MITRE: Final = np.radians(22.5)
@@ -154,6 +155,42 @@ def computed_range_to_2008(S_b: Any, S_t: Any) -> Any:
     return np.sqrt(S_b**2 + (2 * S_t) ** 2)
 
 
+@formula("I_i = max(0.75*i_i, 1)", ref=_320_2)
+def sustained_in_plane(i_i: Any) -> Any:
+    """In-plane index of the sustained stress."""
+    return np.maximum(0.75 * i_i, 1)
+
+
+@formula("I_o = max(0.75*i_o, 1)", ref=_320_2)
+def sustained_out_of_plane(i_o: Any) -> Any:
+    """Out-of-plane index of the sustained stress."""
+    return np.maximum(0.75 * i_o, 1)
+
+
+@formula("S_la = (F_x + P*A_i)/A_c", ref=f"{_320_2}: the pressure acts on closed ends")
+def sustained_axial(F_x: Any, P: Any, A_i: Any, A_c: Any) -> Any:
+    """Sustained axial stress [Pa] of weight and pressure."""
+    return (F_x + P * A_i) / A_c
+
+
+@formula("S_lb = sqrt((I_i*M_i)**2 + (I_o*M_o)**2)/Z_c", ref=_320_2)
+def sustained_bending(I_i: Any, M_i: Any, I_o: Any, M_o: Any, Z_c: Any) -> Any:
+    """Sustained bending stress [Pa]."""
+    return np.sqrt((I_i * M_i) ** 2 + (I_o * M_o) ** 2) / Z_c
+
+
+@formula("S_lt = M_t/(2*Z_c)", ref=_320_2)
+def sustained_torsion(M_t: Any, Z_c: Any) -> Any:
+    """Sustained torsional stress [Pa]."""
+    return M_t / (2 * Z_c)
+
+
+@formula("S_L = sqrt((abs(S_la) + S_lb)**2 + (2*S_lt)**2)", ref=_320_2)
+def sustained_stress(S_la: Any, S_lb: Any, S_lt: Any) -> Any:
+    """Sustained stress [Pa] of weight and pressure."""
+    return np.sqrt((np.abs(S_la) + S_lb) ** 2 + (2 * S_lt) ** 2)
+
+
 @formula("R_m = R_F*(1 - 2*C_cs/3)*R_E", ref=f"{_319_5} eq. (19)")
 def reaction_hot(R_F: Any, C_cs: Any, R_E: Any) -> Any:
     """Greatest reaction hot [N]; only for two anchors with nothing between."""
@@ -170,3 +207,15 @@ def self_spring(S_h: Any, E_a: Any, S_E: Any, E_m: Any) -> Any:
 def reaction_cold(R_F: Any, C_cs: Any, C_1: Any) -> Any:
     """Greatest reaction cold [N]; only for two anchors with nothing between."""
     return R_F * np.maximum(C_cs, C_1)
+
+
+EXPANSION_STRESS: Final[tuple[Rule, ...]] = (axial_stress, resultant_bending, torsional_stress, computed_range)
+"""Computed range from the moments at one point, editions from 2010."""
+
+SUSTAINED_STRESS: Final[tuple[Rule, ...]] = (
+    sustained_in_plane, sustained_out_of_plane, sustained_axial, sustained_bending, sustained_torsion, sustained_stress,
+)  # fmt: skip
+"""Sustained stress at one point."""
+
+COLD_SPRING: Final[tuple[Rule, ...]] = (reaction_hot, self_spring, reaction_cold)
+"""Reactions of a cold-sprung run between two anchors with nothing between."""

@@ -76,6 +76,18 @@ def unseen(design: Design, outside: Outside) -> None:
     outside.note("The sustained stress of weight and pressure is not judged.", True)
 
 
+def friction_reach(basis: Basis) -> np.ndarray:
+    """Length whose friction reaches each end: its own leg and half of what lies between the outer legs, (2, rows) [m].
+
+    Of an L, which has nothing between, half of the other leg.
+    """
+    first, last = basis.lengths[0], basis.lengths[-1]
+    if len(basis.lengths) == 2:
+        return np.stack([first + last / 2, last + first / 2])
+    between = basis.lengths[1:-1].sum(axis=0)
+    return np.stack([first + between / 2, last + between / 2])
+
+
 def room_check(design: Design, basis: Basis, calc: Calc) -> Check:
     """Room of a loop, hot, to the outside of the insulation."""
     rows = design.rows or 1

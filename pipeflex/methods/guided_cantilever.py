@@ -15,6 +15,7 @@ from pipeflex.methods.basis import Basis, remark
 from pipeflex.methods.common import (
     Outside,
     direction_words,
+    friction_reach,
     guide_check,
     held_rigidly,
     leg_names,
@@ -216,7 +217,7 @@ def _load(design: Design, end: int, d: int, states: tuple[str, ...], thermal: An
     return Load(
         point=f"anchor {design.layout.ends[end].name or ('first', 'last')[end]}",
         name="force", positive=positive, negative=negative, kind="force", states=states,
-        thermal=thermal, friction=friction,
+        thermal=thermal, friction=friction, weight=np.zeros_like(thermal),
     )  # fmt: skip
 
 
@@ -232,13 +233,7 @@ def _anchor_check(design: Design, end: int, load: Load) -> Check:
 
 def _friction(design: Design, basis: Basis, calc: Calc) -> np.ndarray:
     """Friction that reaches each end: of its own side only, to the middle of what bends, (2, rows) [N]."""
-    lengths = basis.lengths
-    between = lengths[1:-1].sum(axis=0) if len(lengths) > 2 else None
-    side = [lengths[0], lengths[-1]]
-    if between is not None:
-        reach = np.stack([s + between / 2 for s in side])
-    else:
-        reach = np.stack([side[0] + side[1] / 2, side[1] + side[0] / 2])
+    reach = friction_reach(basis)
     named = [end.name or f"end {i + 1}" for i, end in enumerate(design.layout.ends)]
     friction: np.ndarray = calc.each(
         support.friction_force, over="anchor", names=named, mu=design.layout.friction, w=basis.w, L_mu=reach,
@@ -282,7 +277,8 @@ def _moments(design: Design, legs: Legs, thrust: dict[int, Any], states: tuple[s
             name = design.layout.ends[end].name or ("first", "last")[end]
             loads.append(
                 Load(point=f"anchor {name}", name="moment", positive="either way", negative="either way",
-                     kind="moment", states=states, thermal=moment, friction=np.zeros_like(moment))
+                     kind="moment", states=states, thermal=moment, friction=np.zeros_like(moment),
+                     weight=np.zeros_like(moment))
             )  # fmt: skip
     return loads
 

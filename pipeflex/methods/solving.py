@@ -8,7 +8,7 @@ import numpy as np
 
 from pipeflex.errors import Fault, InputError, PipeflexError, ScopeError
 from pipeflex.mechanics import cantilever, expansion
-from pipeflex.methods import guided_cantilever, screening
+from pipeflex.methods import beam_flexibility, elastic_centre, guided_cantilever, screening
 from pipeflex.methods.basis import Basis, basis
 from pipeflex.model.design import Design
 from pipeflex.model.outcome import Ladder, Outcome, Rung
@@ -29,6 +29,8 @@ class Method:
 METHODS: Final[tuple[Method, ...]] = (
     Method(screening.KEY, screening.TITLE, 1, screening.run),
     Method(guided_cantilever.KEY, guided_cantilever.TITLE, 2, guided_cantilever.run),
+    Method(elastic_centre.KEY, elastic_centre.TITLE, 3, elastic_centre.run),
+    Method(beam_flexibility.KEY, beam_flexibility.TITLE, 4, beam_flexibility.run),
 )
 """All methods, rule to beam."""
 
@@ -124,7 +126,7 @@ def ladder(design: Design) -> Ladder:
 
 def _rung(one: Method, outcome: Outcome) -> Rung:
     reasons = "; ".join(r.words() for r in outcome.outside_reasons)
-    anchors = [abs(v.greatest()) for v in outcome.loads if v.kind == "force"]
+    anchors = [float(c.demand) for c in outcome.checks if c.key.startswith("anchor")]
     return Rung(
         key=one.key, title=one.title, standing=outcome.standing, reason=reasons,
         ratio=float(outcome.leading.ratio), leg=float(outcome.results.get("l_req", np.nan)),

@@ -86,7 +86,7 @@ class Check(_Row):
 class Load(_Row):
     """Force or moment of the pipe on the steel (or equipment) at one point, in every state looked at.
 
-    thermal, friction : (states, rows), SI of `kind`; a working load, unfactored. A positive number acts
+    thermal, friction, weight : (states, rows), SI of `kind`; a working load, unfactored. A positive number acts
     `positive` ("east"), a negative one `negative`.
     """
 
@@ -98,10 +98,11 @@ class Load(_Row):
     states: tuple[str, ...]
     thermal: Rows
     friction: Rows
+    weight: Rows
 
     @property
     def total(self) -> Rows:
-        return self.thermal + self.friction
+        return self.thermal + self.friction + self.weight
 
     @property
     def worst(self) -> Rows:

@@ -254,14 +254,14 @@ def geometry(corners: Array, radius: Array) -> tuple[Array, Array, Array, Array,
                 (
                     tight[i],
                     Fault(
-                        f"leg {i}",
+                        f"leg {i + 1}",
                         lengths[i],
                         f"longer than the tangents of its bends, {float((lengths - room)[i][tight[i]][0]):.6g} m:"
                         " a smaller radius or a longer leg",
                         "length",
                     ),
                 )
-                for i in range(len(lengths))
+                for i in np.flatnonzero(tight.any(axis=1))
             ),
         )
     return along, lengths, np.arctan2(sine, cosine), (after - cosine * before) / sine, tangents

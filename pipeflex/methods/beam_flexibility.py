@@ -1,0 +1,272 @@
+"""The run as beams with exact bends: the reference answer.
+
+Bending, torsion and stretch; shear is left out. The range is that of the run with its guides and line stops closed and
+without friction; reactions of a single design follow its rests, gaps and friction along a history.
+"""
+
+from typing import Any, Final
+
+import numpy as np
+
+from pipeflex.mechanics.beam import Answer, linear, residual
+from pipeflex.methods.basis import Basis, remark
+from pipeflex.methods.beam_loads import Felt, loads_of, plain_loads, settled_loads
+from pipeflex.methods.beam_model import Model, build, case_states, range_states, unit_states
+from pipeflex.methods.beam_shape import shapes_of, stress_along
+from pipeflex.methods.beam_stress import (
+    Range,
+    Sections,
+    corner_factors,
+    sections_of,
+    stress_range,
+    sustained,
+    trace_range,
+    trace_sustained,
+)
+from pipeflex.methods.beam_trace import show_solution
+from pipeflex.methods.common import held_rigidly, room_check, shoe_check
+from pipeflex.model.design import Design
+from pipeflex.model.outcome import Check, Load, Movement, Outcome, Remark
+from pipeflex.model.words import Concern, State
+from pipeflex.trace import Calc, follow
+
+KEY: Final = "beam_flexibility"
+TITLE: Final = "beam flexibility"
+
+Rows = np.ndarray
+
+
+def run(design: Design, basis: Basis, calc: Calc) -> Outcome:
+    """Answer of the beam for a column."""
+    rows = design.rows or 1
+    calc.say("Beam flexibility", heading=True)
+    factors = corner_factors(design, basis, calc)
+    model = build(design, basis, [f["k"] for f in factors], rests=False)
+    sections = sections_of(design, basis, model, factors)
+    answer = linear(model.run, unit_states(rows) if model.uniform else range_states(design, basis))
+    found = stress_range(design, sections, answer, basis.e if model.uniform else None)
+    remarks = [*basis.remarks, *_remarks(design, model)]
+    show_solution(design, basis, model, answer, calc)
+    trace_range(design, sections, found, calc)
+    felt, owner = _loads(design, basis, model, answer, factors, calc.tracing)
+    if felt.contacts is not None:
+        remarks.append(_with_contacts(design, basis, owner, factors, felt.contacts))
+    loads = loads_of(design, owner, felt) if calc.tracing or rows == 1 else _column_loads(design, owner, felt)
+    checks = [
+        _range_check(sections, found),
+        room_check(design, basis, calc),
+        shoe_check(design, basis),
+        *_anchor_checks(design, felt),
+        *_end_checks(design, felt),
+        _guide_check(design, owner, felt),
+        _sustained_check(design, basis, factors, felt, calc),
+    ]
+    results = {name: basis.pool[name] for name in ("w", "e", "E_a", "S_A", "f", "I", "Z")}
+    results |= {"S_E": found.S_E, "residual": _left(answer)} | held_rigidly(design, basis, calc)
+    results |= _cold_spring(design, basis, model, answer, found, remarks, calc)
+    severe = design.code.severe_cyclic
+    if severe is not None:
+        remarks.append(
+            remark("Cyclic conditions may be severe (the range above 0.8 S_A and more than 7000 cycles): "
+                   "the code asks more.", severe(found.S_E, basis.S_A, basis.pool["N"]), True)
+        )  # fmt: skip
+    remarks += felt.remarks
+    extra: dict[str, Any] = {}
+    movements: tuple[Movement, ...] = ()
+    if calc.tracing:
+        extra = {
+            "shapes": shapes_of(design, basis, model, answer),
+            "along": stress_along(model, sections, found),
+        }
+    return Outcome(
+        design=design, method=KEY, method_title=TITLE, checks=tuple(checks), loads=loads, movements=movements,
+        results=results, remarks=_whole(remarks, rows), outside=np.zeros(rows, bool), outside_reasons=(), **extra,
+    )  # fmt: skip
+
+
+def _whole(remarks: list[Remark], rows: int) -> tuple[Remark, ...]:
+    return tuple(
+        Remark(text=r.text, values=r.values, rows=np.broadcast_to(r.rows, (rows,)), serious=r.serious) for r in remarks
+    )
+
+
+def _remarks(design: Design, model: Model) -> list[Remark]:
+    """What this method leaves out of a design."""
+    found = [remark("The range is that of guides without gap and without friction.")]
+    if model.level or not (design.layout.rest_spacing or any(s.kind == "rest" for s in design.layout.supports)):
+        return found
+    found.append(remark("Rests are taken as not holding the line in columns and maps: they can lift."))
+    return found
+
+
+def _loads(
+    design: Design, basis: Basis, model: Model, answer: Answer, factors: list[dict[str, Any]], single: bool
+) -> tuple[Felt, Model]:
+    """Loads of a single design with rests by its history; of a column, or without rests, by sums of friction."""
+    rests = design.layout.rest_spacing is not None or any(s.kind == "rest" for s in design.layout.supports)
+    gaps = any(h.gap > 0 for s in model.run.supports for h in s.holds)
+    if single and (rests or gaps):
+        felt, owner = settled_loads(design, basis, [f["k"] for f in factors])
+        if not rests:
+            felt.weighed = []
+        return felt, owner
+    R_E = basis.case_modulus / basis.E_a
+    if model.uniform:
+        return plain_loads(design, basis, model, answer, tuple(c.name for c in design.duty.cases), R_E), model
+    states, names = case_states(design, basis)
+    cases = linear(model.run, states)
+    return plain_loads(design, basis, model, cases, names, np.repeat(R_E, 2, axis=0)), model
+
+
+def _column_loads(design: Design, model: Model, felt: Felt) -> tuple[Load, ...]:
+    return tuple(v for v in loads_of(design, model, felt) if v.point.startswith("anchor"))
+
+
+def _with_contacts(
+    design: Design, basis: Basis, model: Model, factors: list[dict[str, Any]], contacts: Answer
+) -> Remark:
+    """The range with gaps and rests as they act, for information beside the one with guides closed."""
+    found = stress_range(design, sections_of(design, basis, model, factors), contacts, None)
+    return remark("With gaps and rests as they act, and without friction, the range is {S}.", S=(found.S_E, "stress"))
+
+
+def _range_check(sections: Sections, found: Range) -> Check:
+    return Check(
+        key="range", title="Range S_E / S_A", concern=Concern.STRESS, kind="stress", demand=found.S_E,
+        limit=found.S_A, places=sections.places, place=found.place, states=f"{State.COLDEST} to {State.HOTTEST}",
+    )  # fmt: skip
+
+
+def _anchor_checks(design: Design, felt: Felt) -> list[Check]:
+    """Greatest force of the pipe on each anchor along its leg."""
+    vectors, rows = design.layout.leg_vectors(), design.rows or 1
+    checks = []
+    for i, (parts, leg) in enumerate(zip(felt.ends, (0, -1), strict=True)):
+        along = vectors[:, leg] / np.sqrt((vectors[:, leg] ** 2).sum(axis=0))
+        total = ((parts.thermal + parts.friction + parts.weight)[:, :3] * along).sum(axis=1)
+        name = design.layout.ends[i].name or ("first", "last")[i]
+        place = np.abs(total).argmax(axis=0)
+        checks.append(
+            Check(
+                key=f"anchor {i + 1}", title=f"Anchor {name}, along its leg", concern=Concern.REACTION, kind="force",
+                demand=np.take_along_axis(np.abs(total), place[None], axis=0)[0],
+                limit=np.broadcast_to(design.layout.ends[i].anchor_limit, (rows,)), places=felt.states, place=place,
+                note="thermal and friction together",
+            )
+        )  # fmt: skip
+    return checks
+
+
+def _end_checks(design: Design, felt: Felt) -> list[Check]:
+    """Forces and moments of each end in its nozzle's own directions, where a limit is given."""
+    rows = design.rows or 1
+    checks = []
+    for i, parts in enumerate(felt.ends):
+        end = design.layout.ends[i]
+        limits = (*end.force_limits, *end.moment_limits)
+        if not any(np.isfinite(v).any() for v in limits):
+            continue
+        frame = _frame(end.axis)
+        total = parts.thermal + parts.friction + parts.weight
+        own = np.concatenate([np.einsum("ij,sjr->sir", frame, total[:, n : n + 3]) for n in (0, 3)], axis=1)
+        name = end.name or ("first", "last")[i]
+        for d, limit in enumerate(limits):
+            if not np.isfinite(limit).any():
+                continue
+            place = np.abs(own[:, d]).argmax(axis=0)
+            words = ("along the nozzle", "square to it, level", "square to it, upright")[d % 3]
+            kind = "force" if d < 3 else "moment"
+            title = f"{name}, {kind} {words}" if d < 3 else f"{name}, moment about the direction {words}"
+            checks.append(
+                Check(
+                    key=f"end {i + 1} {kind} {d % 3 + 1}", title=title[0].upper() + title[1:],
+                    concern=Concern.REACTION, kind=kind,
+                    demand=np.take_along_axis(np.abs(own[:, d]), place[None], axis=0)[0],
+                    limit=np.broadcast_to(limit, (rows,)), places=felt.states, place=place,
+                )
+            )  # fmt: skip
+    return checks
+
+
+def _frame(axis: tuple[Any, ...]) -> Rows:
+    """Directions of a nozzle, rows of a matrix: along it, level and square to it, and the third."""
+    first = np.array([float(np.ravel(v)[0]) for v in axis])
+    first = first / np.linalg.norm(first)
+    up = np.array([0.0, 0.0, 1.0]) if abs(first[2]) < 0.999 else np.array([0.0, 1.0, 0.0])
+    level = np.cross(up, first)
+    level /= np.linalg.norm(level)
+    return np.stack([first, level, np.cross(first, level)])
+
+
+def _guide_check(design: Design, model: Model, felt: Felt) -> Check:
+    """Greatest side load of a guide."""
+    rows = design.rows or 1
+    limit = np.broadcast_to(design.limits.guide_limit, (rows,))
+    shared: dict[str, Any] = {
+        "key": "guide", "title": "Guides, side", "concern": Concern.REACTION, "kind": "force", "limit": limit,
+    }  # fmt: skip
+    if not model.guides:
+        return Check(**shared, demand=np.zeros(rows), unjudged="there is no guide")
+    first = [i for i, s in enumerate(model.run.supports) for _ in s.holds]
+    mine = [i for i, s in enumerate(first) if s in model.guides]
+    total = np.abs(felt.holds.thermal + felt.holds.friction)[:, mine]
+    worst = total.max(axis=0)
+    place = worst.argmax(axis=0)
+    tags = tuple(model.run.supports[first[i]].tag for i in mine)
+    return Check(**shared, demand=worst.max(axis=0), places=tags, place=place)
+
+
+def _sustained_check(design: Design, basis: Basis, factors: list[dict[str, Any]], felt: Felt, calc: Calc) -> Check:
+    """Sustained stress of weight and pressure against S_h, in the worst support state of a single design."""
+    rows = design.rows or 1
+    shared: dict[str, Any] = {
+        "key": "sustained", "title": "Sustained stress S_L / S_h", "concern": Concern.STRESS, "kind": "stress",
+        "limit": basis.S_h,
+    }  # fmt: skip
+    if not felt.weighed or not design.code.sustained_stress:
+        why = "no rests are given" if calc.tracing else "rests are judged one design at a time"
+        return Check(**shared, demand=np.zeros(rows), unjudged=why)
+    pressure = np.stack([np.broadcast_to(c.pressure, (rows,)) for c in design.duty.cases]).max(axis=0)
+    worst: tuple[Any, ...] | None = None
+    for name, model, weighed in felt.weighed:
+        sections = sections_of(design, basis, model, factors)
+        S_L, place, pool = sustained(design, sections, weighed, pressure, 0)
+        if worst is None or float(S_L[0]) > float(worst[0][0]):
+            worst = (S_L, place, pool, sections.places, name)
+    assert worst is not None
+    S_L, place, pool, places, name = worst
+    trace_sustained(design, pool, f"{places[int(place[0])]}, {name}", calc)
+    return Check(**shared, demand=S_L, places=places, place=place, states=name)
+
+
+def _cold_spring(
+    design: Design, basis: Basis, model: Model, answer: Answer, found: Range, remarks: list[Remark], calc: Calc
+) -> dict[str, Any]:
+    """Greatest reactions with cold spring, where the code gives them: two anchors with nothing between."""
+    if not np.any(np.asarray(design.duty.cold_spring) > 0):
+        return {}
+    if model.run.supports or not design.code.cold_spring:
+        remarks.append(remark("Cold spring is not counted: it is for two anchors with nothing between.", True, True))
+        return {}
+    hot = basis.case_strain.argmax(axis=0)[None]
+    E_m = np.take_along_axis(basis.case_modulus, hot, axis=0)[0]
+    calc.say("Cold spring: greatest reactions on an end", heading=True)
+    pool = {
+        "R_F": calc.given("R_F", _greatest_range(basis, model, answer), "beam solution at E_a"),
+        "C_cs": design.duty.cold_spring, "E_m": E_m, "E_a": basis.E_a, "S_h": basis.S_h, "S_E": found.S_E,
+        "R_E": calc.given("R_E", E_m / basis.E_a, "modulus of the hottest case over that at 21 °C"),
+    }  # fmt: skip
+    follow(design.code.cold_spring, pool, calc)
+    return {name: pool[name] for name in ("R_m", "R_a")}
+
+
+def _left(answer: Answer) -> Rows:
+    """Force left out of balance, greatest of all states, (rows,) [N]."""
+    return np.asarray(np.abs(residual(answer)[:, :3]).max(axis=(0, 1)))
+
+
+def _greatest_range(basis: Basis, model: Model, answer: Answer) -> Rows:
+    """Greatest reaction range on an end at E_a, (rows,) [N]."""
+    ends = np.concatenate([answer.end_a[:, :3], answer.end_b[:, :3]], axis=1)
+    span = ends[0] * basis.e if model.uniform else ends.max(axis=0) - ends.min(axis=0)
+    return np.asarray(np.abs(span).max(axis=0))
