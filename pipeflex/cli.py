@@ -113,19 +113,19 @@ def _add_display(parser: argparse.ArgumentParser) -> None:
 
 
 def _sheet(given: argparse.Namespace) -> None:
+    _free(given.output, given.overwrite, given.design)
     made = _sheet_of(_opened(given.design), given)
     print(made.write(given.output, overwrite=given.overwrite))
 
 
 def _solve(given: argparse.Namespace) -> None:
-    found = _opened(given.design)
-    if not given.json:
-        print(_sheet_of(found, given, given.method).text())
-        return
     from pipeflex.files.results import to_json
-    from pipeflex.methods import ladder, solve
 
-    print(to_json(solve(found.design, given.method), ladder(found.design)), end="")
+    sheet = _sheet_of(_opened(given.design), given, given.method)
+    if given.json:
+        print(to_json(sheet.outcome, sheet.ladder, " ".join(sheet.headline().lines)), end="")
+    else:
+        print(sheet.text())
 
 
 def _demo(given: argparse.Namespace) -> None:
@@ -134,10 +134,8 @@ def _demo(given: argparse.Namespace) -> None:
 
     folder = Path(given.folder)
     design, page = folder / DEMO, (folder / DEMO).with_suffix(".html")
-    if not given.overwrite:
-        for path in (design, page):
-            if os.path.lexists(path):
-                raise InputError(Fault(str(path), "exists already", allowed="another folder, or --overwrite"))
+    for path in (design, page):
+        _free(path, given.overwrite)
     shipped = read_text(_shipped() / DEMO)
     made = _sheet_of(read_opened(shipped, DEMO), given)
     write_text(design, shipped, make_folder=True)
@@ -169,12 +167,11 @@ def _sizes(given: argparse.Namespace) -> None:
     if not given.size:
         _columns([("NPS", "DN"), *sizes()])
         return
-    wanted = " ".join(given.size)
     rows = [
-        (", ".join(names), text(wall, "pipe dimension", given.units), source)
-        for (diameter, wall, source), names in _walls(wanted).items()
+        (", ".join(names), *(text(number, "pipe dimension", given.units) for number in pair), source)
+        for (*pair, source), names in sorted(_walls(" ".join(given.size)).items(), key=lambda item: item[0])
     ]
-    _columns([("", "outside diameter", "wall", ""), *rows])
+    _columns([("wall", "outside diameter", "thickness", "source"), *rows])
 
 
 def _walls(size: str) -> dict[tuple[float, float, str], list[str]]:
@@ -196,6 +193,14 @@ def _walls(size: str) -> dict[tuple[float, float, str], list[str]]:
     if not found:
         raise refused[0]
     return found
+
+
+def _free(path: str | Path, overwrite: bool, source: str = "") -> None:
+    """Refuse a place that holds something, unless it may be replaced; never replace what is read from."""
+    if os.path.lexists(path) and not overwrite:
+        raise InputError(Fault(str(path), "is there already", allowed="a new place, or --overwrite"))
+    if source and os.path.realpath(path) == os.path.realpath(source):
+        raise InputError(Fault(str(path), "the design itself", allowed="another place than that of the design"))
 
 
 def _opened(path: str) -> "Opened":
@@ -220,7 +225,7 @@ def _sheet_of(found: "Opened", given: argparse.Namespace, method: str | None = N
         design_text=write_design(design),
         fingerprint=design.fingerprint,
         ladder=ladder(design),
-        turns=reserve(design),
+        turns=reserve(design, key=method),
         paper=given.paper,
     )
 

@@ -2,11 +2,16 @@
 
 import dataclasses
 import math
+import os
 import random
+import subprocess
+import sys
 import tomllib
+from pathlib import Path
 
 import pytest
 
+import pipeflex
 from pipeflex.codes import code, codes
 from pipeflex.data.materials import material
 from pipeflex.data.pipes import ELBOWS, elbow, pipe
@@ -247,6 +252,16 @@ def test_a_fingerprint_that_differs_is_told_and_is_no_error(line):
     assert found.design.fingerprint in found.notes[0]
     without = "\n".join(row for row in text.splitlines() if not row.startswith("fingerprint"))
     assert read_opened(without).notes == ()
+
+
+def test_the_fingerprint_is_the_same_in_every_process(line):
+    program = "import sys, pipeflex.files.design_file as f; print(f.read_opened(sys.stdin.read()).notes)"
+    root = str(Path(pipeflex.__file__).parents[1])
+    for seed in ("1", "2"):
+        environment = {**os.environ, "PYTHONPATH": root, "PYTHONHASHSEED": seed}
+        done = subprocess.run([sys.executable, "-c", program], input=write_design(line()), capture_output=True,
+                              text=True, encoding="utf-8", env=environment, timeout=120)  # fmt: skip
+        assert done.stdout == "()\n", done.stdout + done.stderr
 
 
 def test_a_column_has_no_file(line):
