@@ -6,12 +6,19 @@ from dataclasses import dataclass
 
 from pipeflex import present
 from pipeflex.methods.basis import table_values
-from pipeflex.model.layout import SHAPES
 from pipeflex.model.outcome import Check, Ladder, Outcome, Turn
 from pipeflex.model.words import Origin, Standing, Verdict
 from pipeflex.present import UnitSystem
 
 _TURNS_NAMED = 2
+_NOUNS = {
+    "straight": "straight run",
+    "L": "change of direction",
+    "Z": "offset",
+    "U": "loop",
+    "raised U": "raised loop",
+    "points": "run",
+}
 
 
 @dataclass(frozen=True, slots=True)
@@ -55,7 +62,7 @@ def question(outcome: Outcome, units: UnitSystem = "metric") -> str:
     size = pipe.size or present.text(float(pipe.outside_diameter), "pipe dimension", units)
     span = present.span(float(design.coldest()[0]), float(design.hottest()[0]), "temperature", units)
     return (
-        f"Is this {SHAPES[layout.shape].title}{with_leg} of {size} pipe, {pipe.material.key},"
+        f"Is this {_NOUNS[layout.shape]}{with_leg} of {size} pipe, {pipe.material.key},"
         f" flexible enough for {span} by {design.code.key}?"
     )
 
@@ -121,9 +128,7 @@ def _turning(outcome: Outcome, units: UnitSystem, turns: Sequence[Turn]) -> str:
         named.append((t.label, value))
     if holds:
         return "Turns at " + " or ".join(_with_label(*n) for n in named) + "."
-    (label, value), *rest = named
-    first = f"{label} {value} holds"
-    return first + "".join(f"; so does {_with_label(*n)}" for n in rest) + "."
+    return "It holds with " + ", or with ".join(_with_label(*n) for n in named) + "."
 
 
 def _with_label(label: str, value: str) -> str:

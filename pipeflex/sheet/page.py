@@ -144,7 +144,8 @@ class View:
         self.question = head.question(outcome, units)
         self.headline = sheet.headline()
         said = [*outcome.outside_reasons, *outcome.remarks]
-        self.remarks = [(r.words(units), r.serious) for r in sorted(said, key=lambda r: not r.serious)]
+        self.serious = tuple(r.words(units) for r in said if r.serious)
+        self.remarks = tuple(r.words(units) for r in said if not r.serious)
         self.checks = results.checks(outcome, units)
         self.loads = results.loads(outcome)
         self.load_terms = results.load_terms(outcome, units)

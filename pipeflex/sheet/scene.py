@@ -15,6 +15,7 @@ from pipeflex.sheet.drawing.describe import described, length_text
 from pipeflex.sheet.drawing.dimensions import Dimension, place_dimensions
 from pipeflex.sheet.drawing.parts import HEAVY, SMALL, TEXT, THIN, XY, Label, Scene, shortened, text_width
 from pipeflex.sheet.drawing.run import VIEWS, DrawnRun, drawn_run, view_matrix
+from pipeflex.sheet.drawing.standing import standing
 
 __all__ = ["VIEWS", "Scene", "scene"]
 
@@ -54,8 +55,8 @@ def scene(
     clear = max(1.8, covered + 0.7)
     _pipe(board, run, covered)
     _ends(board, run)
-    _supports(board, run, layout, clear)
     band = overlays.ribbon(board, run, outcome, clear - 0.4)
+    _supports(board, run, layout, clear)
     times = overlays.hot_shape(board, run, outcome)
     room = _room(board, run, outcome, view)
     _corner_of_paper(board, run, layout, view)
@@ -85,10 +86,13 @@ def _laid_out(
 ) -> DrawnRun:
     layout = outcome.design.layout
     inner = (18.0, 18.0, width - 36.0, height - 18.0 - 31.0)
-    extra = None
-    if view == "plan" and (room := _drawn_room(outcome)) is not None:
-        extra = np.array([[0.0, room, 0.0]])
-    return drawn_run(layout, units, view_matrix(view, viewpoint), inner, 0.22 * width, extra)
+    room = _drawn_room(outcome)
+    extra = None if room is None else np.array([[0.0, room, 0.0]])
+    stub = 0.22 * width
+    plan = drawn_run(layout, units, view_matrix("plan", 0), inner, stub, extra)
+    if view == "plan":
+        return plan
+    return drawn_run(layout, units, view_matrix(view, viewpoint), inner, stub, coarser=plan.scale)
 
 
 def _drawn_room(outcome: Outcome) -> float | None:
@@ -143,31 +147,10 @@ def _end_places(run: DrawnRun) -> list[tuple[XY, XY]]:
     ]
 
 
-def _marked(run: DrawnRun, layout: Layout) -> Iterator[tuple[str, str, int, float, float]]:
-    """Supports as drawn: kind, name, leg from 0, distance along it, gap."""
-    lengths = [leg.length for leg in run.legs]
-    last = len(lengths) - 1
-    if layout.first_guide is not None and last > 0:
-        for leg, way in ((0, -1), (last, 1)):
-            d = float(layout.first_guide)
-            while d < lengths[leg]:
-                yield "guide", "", leg, lengths[leg] - d if way < 0 else d, float(layout.guide_gap)
-                if layout.guide_spacing is None:
-                    break
-                d += float(layout.guide_spacing)
-    for s in layout.supports:
-        yield s.kind, s.name, s.leg - 1, float(s.distance), float(s.gap)
-    if layout.rest_spacing is not None:
-        for leg in {0, last}:
-            spacing = float(layout.rest_spacing)
-            for i in range(1, min(2000, int((lengths[leg] - 1e-9) / spacing)) + 1):
-                yield "rest", "", leg, i * spacing if leg == 0 else lengths[leg] - i * spacing, 0.0
-
-
 def _supports(board: Board, run: DrawnRun, layout: Layout, clear: float) -> None:
     """Marks of all supports that stand on a drawn part of the run, none upon another of its kind."""
     placed: list[tuple[str, XY]] = []
-    for kind, name, leg, distance, _ in _marked(run, layout):
+    for kind, name, leg, distance, _ in standing(layout):
         place = run.legs[leg].place(distance)
         u = run.direction(run.legs[leg].unit)
         if place is None or u == (0.0, 0.0):
@@ -219,9 +202,9 @@ def _strip(board: Board, run: DrawnRun, outcome: Outcome, units: UnitSystem, vie
     if any(leg.broken for leg in run.legs):
         x = 2.0 + text_width(title, TEXT) * 1.1 + 3.0
         board.write(Label((x, 3.6), "long straights broken", "ink", SMALL, "start"))
-    y = board.height - 8.0
+    y = board.height - 8.6
     x = 2.0
-    kinds = dict.fromkeys(kind for kind, *_ in _marked(run, layout))
+    kinds = dict.fromkeys(kind for kind, *_ in standing(layout))
     for kind in kinds:
         at = (x + 3.0, y)
         board.draw(((x, y), (x + 6.0, y)), weight=HEAVY, keep="solid", clear=1.2)
@@ -237,7 +220,7 @@ def _strip(board: Board, run: DrawnRun, outcome: Outcome, units: UnitSystem, vie
         board.fill(((x, y), (x, y - 1.2), (x + 7.0, y - 2.0), (x + 7.0, y)), "ribbon", 0.45, keep="solid")
         board.draw(((x, y - 1.6), (x + 7.0, y - 1.6)), "ribbon", THIN, keep="")
         board.write(Label((x + 8.5, y), "ratio S_E/S_A, line at 1", "ink", SMALL, "start"))
-    y = board.height - 3.2
+    y = board.height - 2.9
     end = marks.scale_bar(board, (2.0, y), run.scale, units)
     notes = [f"lengths in {present.display('length', units).unit}"]
     radii = {round(r, 9) for r in run.radii if r > 0}
@@ -344,7 +327,7 @@ def leg_paths(layout: Layout) -> list[str | None]:
 def _support_names(board: Board, run: DrawnRun, layout: Layout, units: UnitSystem, clear: float) -> None:
     """Names of supports, and the gap of the first guide that has one and of every named support."""
     gap_said = False
-    for kind, name, leg, distance, gap in _marked(run, layout):
+    for kind, name, leg, distance, gap in standing(layout):
         place = run.legs[leg].place(distance)
         u = run.direction(run.legs[leg].unit)
         said = gap > 0 and kind == "guide" and (bool(name) or not gap_said)

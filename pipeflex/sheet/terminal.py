@@ -24,7 +24,7 @@ def as_text(view: "View") -> str:
         "",
         *(line for text in view.headline.lines for line in _wrapped(text)),
         "",
-        *(line for text, serious in view.remarks for line in _wrapped(("! " if serious else "- ") + text, 2)),
+        *(line for text in view.serious for line in _wrapped(f"! {text}", 2)),
         "",
         *_wrapped(view.scene.description),
         *_section("Inputs"),
@@ -35,6 +35,7 @@ def as_text(view: "View") -> str:
               "; ".join(t for t in (c.where, c.reason) if t)) for c in view.checks],
             (26, 22, 8, 12, 28),
         ),
+        *(line for text in view.remarks for line in _wrapped(f"- {text}", 2)),
         *_section("Loads"),
         *_wrapped(view.load_terms),
         *_loads([r for r in view.loads if r.greatest]),
@@ -97,12 +98,12 @@ def _line(line: Line) -> Iterator[str]:
     if line.form == "sentence":
         yield from _wrapped("     " + line.words, 5)
         return
-    words = f"{line.number:>3}  {line.words}" + (f", {line.where}" if line.where else "")
+    words = f"{line.number:>3}  {line.words}" + (f" {line.symbol}" if line.form == "value" else "") + (f", {line.where}" if line.where else "")
     tick = f"{line.result}  [ ]"
     yield words.ljust(WIDTH - len(tick) - 1) + " " + tick
     if line.reason is not None:
         yield f"       because {line.reason}: {line.reason_numbers}"
-    if line.equation is not None:
+    if line.equation is not None and line.form != "value":
         yield f"       {line.equation}"
     if line.numbers is not None:
         yield f"       = {line.numbers}"

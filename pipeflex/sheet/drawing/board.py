@@ -131,9 +131,9 @@ class Board:
         m = self.margin
         return left >= m and top >= m and right <= self.width - m and bottom <= self.height - m
 
-    def free_for_letters(self, label: Label) -> bool:
+    def free_for_letters(self, label: Label, over_thin: bool = False) -> bool:
         box = label.box(0.35)
-        return self.inside(box) and not self._solid.hit(box) and not self._thin.hit(box)
+        return self.inside(box) and not self._solid.hit(box) and (over_thin or not self._thin.hit(box))
 
     def free_for_line(self, a: XY, b: XY, half: float = 0.7) -> bool:
         strip = band(a, b, half)
@@ -145,15 +145,15 @@ class Board:
         self._solid.add(label.box(0.35))
 
     def place(self, candidates: Iterable[Label]) -> bool:
-        """The first of the candidates for which there is room; noted as left out if there is none."""
-        first: Label | None = None
-        for label in candidates:
-            first = first or label
-            if self.free_for_letters(label):
-                self.write(label)
-                return True
-        if first is not None:
-            self.left_out.append(first.text)
+        """The first of the candidates for which there is room, if need be over thin lines; else it is left out."""
+        listed = tuple(candidates)
+        for over_thin in (False, True):
+            for label in listed:
+                if self.free_for_letters(label, over_thin):
+                    self.write(label)
+                    return True
+        if listed:
+            self.left_out.append(listed[0].text)
         return False
 
     def beside(

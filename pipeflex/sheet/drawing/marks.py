@@ -75,7 +75,7 @@ def spring(board: Board, at: XY, along: XY, clear: float) -> None:
     """A coil under the pipe."""
     down = under(along)
     start = moved(at, down, clear - 0.6)
-    coil = [moved(moved(start, down, 0.8 * i), along, 1.0 * (i % 2 * 2 - 1) if 0 < i < 6 else 0) for i in range(7)]
+    coil = [moved(moved(start, down, 0.5 * i), along, 1.0 * (i % 2 * 2 - 1) if 0 < i < 6 else 0) for i in range(7)]
     board.draw(coil, weight=THIN * 1.4, keep="solid")
     foot = coil[-1]
     board.draw((moved(foot, along, -1.4), moved(foot, along, 1.4)), weight=MEDIUM, keep="solid")

@@ -15,7 +15,9 @@ from pipeflex.sheet.drawing.marks import under
 from pipeflex.sheet.drawing.parts import MEDIUM, SMALL, THIN, XY, Anchor, Label
 from pipeflex.sheet.drawing.run import DrawnRun, Floats
 
-RIBBON: Final = "S_E/S_A"
+RIBBON: Final = "ratio"
+_STEP: Final = 1.2
+"""Distance of the points at which a quantity along the run is drawn [mm]."""
 _AT_ONE = 4.0
 """Thickness of the ribbon where the ratio is 1 [mm]."""
 _MOST = 2.0
@@ -24,17 +26,16 @@ _HOT_REACH = 9.0
 _MAGNIFICATIONS = (1, 2, 5, 10, 20, 50, 100, 200, 500)
 
 
-def along_points(run: DrawnRun, outcome: Outcome, along: Along) -> list[Floats | None]:
-    """Where the points of a quantity along the run are drawn."""
-    shape = next((s for s in outcome.shapes if np.shape(s.points)[1] == np.shape(along.distance)[0]), None)
-    if shape is not None:
-        return run.carried(np.asarray(shape.points), shape.leg)
-    ends = np.concatenate([[0.0], np.cumsum([leg.length for leg in run.legs])])
-    out = []
-    for d in np.asarray(along.distance, float):
-        i = int(np.clip(np.searchsorted(ends, d, side="right") - 1, 0, len(run.legs) - 1))
-        out.append(run.legs[i].place(float(min(d - ends[i], run.legs[i].length))))
-    return out
+def _dense(run: DrawnRun, along: Along) -> tuple[Floats, Floats]:
+    """Distances and values along the run, close enough to be drawn; a jump keeps both its values."""
+    d, v = np.asarray(along.distance, float), np.asarray(along.value, float)
+    step = _STEP * run.scale / 1000
+    distance, value = [d[0]], [v[0]]
+    for i in range(len(d) - 1):
+        parts = np.linspace(0, 1, max(1, int(np.ceil((d[i + 1] - d[i]) / step))) + 1)[1:]
+        distance += list(d[i] + parts * (d[i + 1] - d[i]))
+        value += list(v[i] + parts * (v[i + 1] - v[i]))
+    return np.array(distance), np.array(value)
 
 
 def stretches(run: DrawnRun, places: Sequence[Floats | None]) -> list[list[tuple[int, XY]]]:
@@ -45,9 +46,7 @@ def stretches(run: DrawnRun, places: Sequence[Floats | None]) -> list[list[tuple
             if out[-1]:
                 out.append([])
             continue
-        at = run.paper(p)
-        if not out[-1] or math.dist(out[-1][-1][1], at) > 1e-6:
-            out[-1].append((i, at))
+        out[-1].append((i, run.paper(p)))
     return [s for s in out if len(s) > 1]
 
 
@@ -55,13 +54,13 @@ Feet = dict[int, tuple[XY, XY]]
 """Of each point along the run: where the ribbon begins on paper, and the direction of its thickness."""
 
 
-def ribbon(board: Board, run: DrawnRun, outcome: Outcome, clear: float) -> tuple[Along, Feet] | None:
+def ribbon(board: Board, run: DrawnRun, outcome: Outcome, clear: float) -> tuple[str, Floats, Feet] | None:
     """A band beside the pipe as thick as the ratio; black and hatched where the ratio passes 1."""
     along = next((a for a in outcome.along if a.key == RIBBON), None)
     if along is None:
         return None
-    value = np.asarray(along.value, float)
-    parts = stretches(run, along_points(run, outcome, along))
+    distance, value = _dense(run, along)
+    parts = stretches(run, [run.along(float(d)) for d in distance])
     if not parts:
         return None
     side = _outer_side(parts, value)
@@ -73,7 +72,7 @@ def ribbon(board: Board, run: DrawnRun, outcome: Outcome, clear: float) -> tuple
         for (i, _), (j, _) in pairwise(part):
             _slice(board, feet[i], feet[j], float(value[i]), float(value[j]))
         board.draw((moved(*feet[i], _AT_ONE) for i, _ in part), "ribbon", THIN, keep="thin")
-    return along, feet
+    return along.title, value, feet
 
 
 def _outer_side(parts: list[list[tuple[int, XY]]], value: Floats) -> int:
@@ -91,6 +90,9 @@ def _outer_side(parts: list[list[tuple[int, XY]]], value: Floats) -> int:
 
 def _normals(points: list[XY], side: int) -> list[XY]:
     ways = [unit_between(a, b) for a, b in pairwise(points)]
+    known = next((w for w in ways if w != (0.0, 0.0)), (1.0, 0.0))
+    for i, w in enumerate(ways):
+        known = ways[i] = known if w == (0.0, 0.0) else w
     out = []
     for before, after in zip([ways[0], *ways], [*ways, ways[-1]], strict=True):
         total = (before[0] + after[0], before[1] + after[1])
@@ -114,6 +116,8 @@ def _slice(board: Board, one: tuple[XY, XY], other: tuple[XY, XY], a: float, b: 
         return
     over = max(a, b) > 1
     (p, n), (q, m) = one, other
+    if math.dist(p, q) < 1e-6:
+        return
     outline = (p, moved(p, n, _thick(a)), moved(q, m, _thick(b)), q)
     board.fill(outline, "ink" if over else "ribbon", 0.3 if over else 0.45, keep="thin")
     if over:
@@ -128,9 +132,9 @@ def _slice(board: Board, one: tuple[XY, XY], other: tuple[XY, XY], a: float, b: 
             board.draw((foot, head), "ink", THIN, keep="")
 
 
-def flags(board: Board, along: Along, feet: Feet) -> None:
+def flags(board: Board, title: str, value: Floats, feet: Feet) -> None:
     """The number at each peak that passes 1, and at the greatest ratio."""
-    value, shown = np.asarray(along.value, float), sorted(feet)
+    shown = sorted(feet)
     peaks = [
         i
         for k, i in enumerate(shown)
@@ -147,7 +151,7 @@ def flags(board: Board, along: Along, feet: Feet) -> None:
         text = present.percent(float(value[i]))
         if board.beside(top, text, first=n, distances=(3.4, 5.0, 7.0, 9.5, 12.5), bold=bool(value[i] > 1)):
             board.draw((foot, moved(top, n, 1.2)), "ink", THIN, keep="")
-            board.spot(top, f"{along.title}: {text}")
+            board.spot(top, f"{title}: {text}")
             placed.append(top)
 
 
@@ -162,11 +166,26 @@ def hot_shape(board: Board, run: DrawnRun, outcome: Outcome) -> int | None:
         return None
     fitting = [m for m in _MAGNIFICATIONS if m * most <= _HOT_REACH]
     times = fitting[-1] if fitting else 1
-    places = run.carried(np.asarray(shape.points, float), shape.leg)
-    shifted = [None if p is None else p + times * movement[:, i] for i, p in enumerate(places)]
+    points, moves, legs = _dense_shape(run, shape)
+    places = run.carried(points, legs)
+    shifted = [None if p is None else p + times * moves[:, i] for i, p in enumerate(places)]
     for part in stretches(run, shifted):
         board.draw([p for _, p in part], "heat", MEDIUM, (2.2, 1.1), keep="thin", clear=0.2)
     return times
+
+
+def _dense_shape(run: DrawnRun, shape: Shape) -> tuple[Floats, Floats, list[int]]:
+    """Points, movements and legs of a shape, close enough that breaks of the pipe cut it where they are."""
+    both = np.concatenate([np.asarray(shape.points, float), np.asarray(shape.movement, float)])
+    step, columns, legs = 2 * _STEP * run.scale / 1000, [both[:, 0]], [shape.leg[0]]
+    for i in range(both.shape[1] - 1):
+        size = float(np.linalg.norm(both[:3, i + 1] - both[:3, i]))
+        count = max(1, int(np.ceil(size / step))) if shape.leg[i] == shape.leg[i + 1] else 1
+        for t in np.linspace(0, 1, count + 1)[1:]:
+            columns.append(both[:, i] + t * (both[:, i + 1] - both[:, i]))
+            legs.append(shape.leg[i + 1])
+    dense = np.array(columns).T
+    return dense[:3], dense[3:], legs
 
 
 def hottest_shape(outcome: Outcome) -> Shape | None:
@@ -192,10 +211,21 @@ def growth(outcome: Outcome) -> list[tuple[int, float]]:
         axis = int(np.abs(vector).argmax())
         word = (outcome.design.layout.along, outcome.design.layout.across, "up")[axis]
         moves = [m for m in outcome.movements if m.point == f"corner {corner}" and m.positive == word]
-        values = [v for m in moves for v in _in_state(m, hottest)]
+        values = [v * float(np.sign(vector[axis])) for m in moves for v in _in_state(m, hottest)]
+        values = values or _of_shape(outcome, leg, vector)
         if values:
-            found.append((leg, max(values, key=abs) * way * float(np.sign(vector[axis]))))
+            found.append((leg, max(values, key=abs) * way))
     return found
+
+
+def _of_shape(outcome: Outcome, leg: int, vector: Floats) -> list[float]:
+    """Movement of the inner end of an outer leg along that leg, by the hottest shape."""
+    shape = hottest_shape(outcome)
+    if shape is None:
+        return []
+    mine = [i for i, of in enumerate(shape.leg) if of == leg]
+    at = mine[-1] if leg == 0 else mine[0]
+    return [float(np.asarray(shape.movement)[:, at] @ vector / np.linalg.norm(vector))]
 
 
 def _in_state(movement: Movement, state: str) -> list[float]:

@@ -108,8 +108,28 @@ class DrawnRun:
     def tangent(self, corner: int) -> float:
         """Distance from an inner corner to the start of its bend, as drawn [m]."""
         before, after = self.legs[corner], self.legs[corner + 1]
-        turn = float(np.arccos(np.clip(before.unit @ after.unit, -1, 1)))
-        return float(min(self.radii[corner] * np.tan(turn / 2), before.far / 2, after.near / 2))
+        return float(min(self._turn(corner)[1], before.far, after.near))
+
+    def along(self, distance: float) -> Floats | None:
+        """Where a point at a distance along the true centreline, bends as arcs, is drawn."""
+        taken, begin = 0.0, 0.0
+        for i, leg in enumerate(self.legs):
+            last = i == len(self.legs) - 1
+            turn, cut = (0.0, 0.0) if last else self._turn(i)
+            straight = leg.length - begin - cut
+            if distance <= taken + straight or (last and distance <= taken + straight * (1 + 1e-9) + 1e-9):
+                return leg.place(min(begin + max(distance - taken, 0.0), leg.length))
+            taken += straight
+            arc = 0.0 if last else self.radii[i] * turn
+            if distance <= taken + arc and arc > 0:
+                return self._on_bend(i, (distance - taken) / arc * turn)
+            taken, begin = taken + arc, cut
+        return self.corners[-1]
+
+    def _turn(self, i: int) -> tuple[float, float]:
+        """Change of direction at an inner corner [rad], and the straight that its bend takes from a leg [m]."""
+        turn = float(np.arccos(np.clip(self.legs[i].unit @ self.legs[i + 1].unit, -1, 1)))
+        return turn, float(self.radii[i] * np.tan(turn / 2))
 
     def centreline(self) -> list[list[Floats]]:
         """The pipe as pieces of points in space, bends as arcs; a break parts two pieces."""
@@ -126,16 +146,18 @@ class DrawnRun:
         return pieces
 
     def _bend(self, i: int) -> list[Floats]:
-        corner, reach = self.corners[i + 1], self.tangent(i)
-        if reach <= 0:
-            return [corner]
+        if self.tangent(i) <= 0:
+            return [self.corners[i + 1]]
+        return [self._on_bend(i, a) for a in np.linspace(0, self._turn(i)[0], _ARC_STEPS + 1)]
+
+    def _on_bend(self, i: int, angle: float) -> Floats:
+        """A point of a bend, as drawn, after so much of its turn [rad]."""
         u, v = self.legs[i].unit, self.legs[i + 1].unit
-        turn = float(np.arccos(np.clip(u @ v, -1, 1)))
+        turn, reach = self._turn(i)[0], self.tangent(i)
         radius = reach / np.tan(turn / 2)
         inward = (v - u * np.cos(turn)) / np.sin(turn)
-        start = corner - u * reach
-        angles = np.linspace(0, turn, _ARC_STEPS + 1)
-        return [start + radius * (u * np.sin(a) + inward * (1 - np.cos(a))) for a in angles]
+        start = self.corners[i + 1] - u * reach
+        return np.asarray(start + radius * (u * np.sin(angle) + inward * (1 - np.cos(angle))))
 
     def carried(self, points: Floats, legs: Sequence[int]) -> list[Floats | None]:
         """Where points of the true run, (3, n), each on or near one leg, are drawn."""
@@ -156,6 +178,7 @@ def drawn_run(
     inner: tuple[float, float, float, float],
     stub: float,
     extra: Floats | None = None,
+    coarser: int = 0,
 ) -> DrawnRun:
     """Lay a single layout out at the finest standard scale at which it fits.
 
@@ -164,6 +187,7 @@ def drawn_run(
     inner : left, top, width, height on paper that the run may take [mm].
     stub : least length on paper of a straight that is broken [mm].
     extra : (n, 3), offsets from the first corner that must also be on the drawing [m].
+    coarser : the scale is not finer than this one.
     """
     true = layout.corner_points()[:, :, 0].T
     vectors = np.diff(true, axis=0)
@@ -171,6 +195,8 @@ def drawn_run(
     unit = vectors / lengths[:, None]
     inner_legs = lengths[1:-1] if len(lengths) > 2 else lengths.min(keepdims=True)
     long = (lengths > _LONG * np.median(inner_legs)) & (len(lengths) > 1)
+    if layout.shape != "points":
+        long[1:-1] = False
     left, top, width, height = inner
 
     def laid(metres: float) -> tuple[Floats, Floats]:
@@ -187,7 +213,8 @@ def drawn_run(
         return bool(size[0] <= width and size[1] <= height)
 
     scale, scale_text = next(
-        ((s, words) for s, words in _SCALES[units] if fits(stub * s / 1000, s)), _SCALES[units][-1]
+        ((s, words) for s, words in _SCALES[units] if s >= coarser and fits(stub * s / 1000, s)),
+        _SCALES[units][-1],
     )
     low, high = stub * scale / 1000, float(lengths.max())
     if not fits(high, scale):
