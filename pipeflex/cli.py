@@ -214,20 +214,9 @@ def _opened(path: str) -> "Opened":
 
 
 def _sheet_of(found: "Opened", given: argparse.Namespace, method: str | None = None) -> "Sheet":
-    from pipeflex.files.design_file import write_design
-    from pipeflex.methods import ladder, reserve, solve
-    from pipeflex.sheet import Sheet
+    from pipeflex.sheet import sheet
 
-    design = found.design
-    return Sheet(
-        outcome=solve(design, method),
-        units=given.units,
-        design_text=write_design(design),
-        fingerprint=design.fingerprint,
-        ladder=ladder(design),
-        turns=reserve(design, key=method),
-        paper=given.paper,
-    )
+    return sheet(found.design, given.units, method, given.paper)
 
 
 def _shipped() -> Path:

@@ -186,18 +186,31 @@ def loads_of(design: Design, model: Model, felt: Felt) -> tuple[Load, ...]:
                 if d < 3
                 else _turning(design, d - 3)
             )
-            made = _load(point, name, positive, negative, kind, felt.states, parts, d)
+            made = _load(point, name, positive, negative, kind, felt.states, parts, d, scale)
             if float(np.abs(made.total).max(initial=0.0)) > _NOTHING * scale:
                 found.append(made)
     return (*found, *_support_loads(design, model, felt, scale))
 
 
 def _load(
-    point: str, name: str, positive: str, negative: str, kind: str, states: tuple[str, ...], parts: Parts, d: int
+    point: str,
+    name: str,
+    positive: str,
+    negative: str,
+    kind: str,
+    states: tuple[str, ...],
+    parts: Parts,
+    d: int,
+    scale: float,
 ) -> Load:
+    """One component of the load on one point; what rounding leaves of nothing is nothing."""
+
+    def clean(values: Rows) -> Rows:
+        return np.where(np.abs(values) > _NOTHING * scale, values, 0.0)
+
     return Load(
         point=point, name=name, positive=positive, negative=negative, kind=kind, states=states,
-        thermal=parts.thermal[:, d], friction=parts.friction[:, d], weight=parts.weight[:, d],
+        thermal=clean(parts.thermal[:, d]), friction=clean(parts.friction[:, d]), weight=clean(parts.weight[:, d]),
     )  # fmt: skip
 
 
@@ -221,7 +234,7 @@ def _support_loads(design: Design, model: Model, felt: Felt, scale: float) -> li
             back = bool(direction[d] < 0)
             load = _load(
                 support.tag, "force", direction_words(design, d, back), direction_words(design, d, not back), "force",
-                felt.states, felt.holds, at,
+                felt.states, felt.holds, at, scale,
             )  # fmt: skip
             if float(np.abs(load.total).max(initial=0.0)) > _NOTHING * scale:
                 found.append(load)

@@ -12,7 +12,9 @@ from pipeflex.methods import beam_flexibility, elastic_centre, guided_cantilever
 from pipeflex.methods.basis import Basis, basis
 from pipeflex.model.design import Design
 from pipeflex.model.outcome import Ladder, Outcome, Rung
+from pipeflex.model.record import put
 from pipeflex.model.words import Standing
+from pipeflex.present import percent
 from pipeflex.trace import PLAIN, Calc, Trace
 
 
@@ -102,26 +104,37 @@ def _single(design: Design, one: Method) -> Outcome:
 
 
 def ladder(design: Design) -> Ladder:
-    """All methods for one design, rule to beam, with the developed-length rule as a marked comparison."""
-    rungs, best, answers = [], None, []
+    """All methods for one design, rule to beam, with the developed-length rule as a marked comparison.
+
+    `best` is the outcome of the highest method inside its limits, or of the highest that can answer at all. Every row
+    says how its ratio compares with the reference, and what the reference says at the leg that the row asks.
+    """
+    rungs: list[Rung] = []
+    answers: list[Outcome] = []
     for one in METHODS:
         try:
             outcome = _single(design, one)
         except ScopeError as error:
-            nothing = float("nan")
-            rungs.append(
-                Rung(key=one.key, title=one.title, standing=Standing.OUTSIDE, reason=error.text(), ratio=nothing,
-                     leg=nothing, anchor=nothing)
-            )  # fmt: skip
+            rungs.append(_refused(one, error))
             continue
         answers.append(outcome)
         rungs.append(_rung(one, outcome))
-        if not outcome.outside:
-            best = outcome
-    if best is None and answers:
-        best = answers[-1]
-    comparison = _developed(design)
-    return Ladder(design=design, rungs=(*rungs, *comparison), best=best)
+    if not answers:
+        raise ScopeError(Fault("layout", "a run that no method can answer", allowed="a change of direction"))
+    rungs += _developed(design)
+    inside = [o for o in answers if not o.outside]
+    best = (inside or answers)[-1]
+    reference = answers[-1]
+    compared = [_compared(design, r, reference) for r in rungs]
+    return Ladder(design=design, rungs=tuple(compared), best=best)
+
+
+def _refused(one: Method, error: ScopeError) -> Rung:
+    nothing = float("nan")
+    return Rung(
+        key=one.key, title=one.title, standing=Standing.OUTSIDE, reason=error.text(), ratio=nothing, leg=nothing,
+        anchor=nothing,
+    )  # fmt: skip
 
 
 def _rung(one: Method, outcome: Outcome) -> Rung:
@@ -132,6 +145,31 @@ def _rung(one: Method, outcome: Outcome) -> Rung:
         ratio=float(outcome.leading.ratio), leg=float(outcome.results.get("l_req", np.nan)),
         anchor=max(anchors, default=float("nan")),
     )  # fmt: skip
+
+
+def _compared(design: Design, rung: Rung, reference: Outcome) -> Rung:
+    """A rung beside the reference answer, with a plain word where the rule is unsafe for this design."""
+    if rung.key == reference.method or np.isnan(rung.ratio):
+        return rung
+    exact = float(reference.leading.ratio)
+    unsafe = ""
+    if rung.ratio <= 1 < exact:
+        unsafe = f"Unsafe here: {reference.method_title} has {percent(exact)} where this row has {percent(rung.ratio)}."
+    at_leg = _at_leg(design, rung.leg, reference.method)
+    if at_leg > 1:
+        unsafe = f"Unsafe here: at the leg that it asks, {reference.method_title} has {percent(at_leg)}."
+    return replace(rung, to_best=rung.ratio / exact, at_leg=at_leg, unsafe=unsafe)
+
+
+def _at_leg(design: Design, leg: float, key: str) -> float:
+    """Ratio of the reference at another leg; not a number where there is no such leg."""
+    if "leg" not in design.layout.sizes or not np.isfinite(leg) or leg <= 0:
+        return float("nan")
+    try:
+        trial = put(design, "layout.sizes.leg", np.array([leg]))
+        return float(_column(trial, method(key)).leading.ratio[0])
+    except PipeflexError:
+        return float("nan")
 
 
 def _developed(design: Design) -> tuple[Rung, ...]:

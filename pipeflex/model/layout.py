@@ -209,8 +209,12 @@ class Layout(Record):
         "movement", at_least=0, at_most=0.1, default=0.003, label="Guide gap a side", basis="common practice"
     )
     guide_stiffness: float = number("stiffness", above=0, unlimited=True, label="Guide stiffness", default=np.inf)
-    guide_spacing: float | None = number("length", at_least=0.01, optional=True, label="Between guides", default=None)
-    rest_spacing: float | None = number("length", at_least=0.01, optional=True, label="Between rests", default=None)
+    guide_spacing: float | None = number(
+        "length", at_least=0.01, at_most=FARTHEST, optional=True, label="Between guides", default=None
+    )
+    rest_spacing: float | None = number(
+        "length", at_least=0.01, at_most=FARTHEST, optional=True, label="Between rests", default=None
+    )
     friction: float = number(
         "ratio",
         at_least=0,

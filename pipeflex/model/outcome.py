@@ -271,6 +271,9 @@ class Rung(_Row):
     reference: bool = False
     """A comparison row: it has no rank and feeds no headline."""
     to_best: Rows = float("nan")
+    """Its ratio over that of the reference, the highest method that answers."""
+    at_leg: Rows = float("nan")
+    """Ratio of the reference at the leg that this row asks."""
     unsafe: str = ""
 
 

@@ -225,11 +225,14 @@ def substituted(
 
 
 def written(equation: str) -> Expression:
-    """An equation in letters of its own ("X = solve(C, X_d)"), each side printed."""
+    """An equation in letters of its own ("X = solve(C, X_d)"), each side printed; words stay as they are."""
     sides = [side.strip() for side in equation.split("=")]
-    return Expression.joined(
-        " = ", (_printed(ast.parse(s, mode="eval").body, s, _letters, numbers=False) for s in sides)
-    )
+    try:
+        trees = [ast.parse(side, mode="eval").body for side in sides]
+    except SyntaxError:
+        return Expression(equation, escape(equation))
+    printed = (_printed(t, s, _letters, numbers=False) for t, s in zip(trees, sides, strict=True))
+    return Expression.joined(" = ", printed)
 
 
 def condition(asked: Condition, units: UnitSystem = "metric") -> tuple[Expression, Expression]:
