@@ -154,23 +154,26 @@ def _growth(design: Design, g: dict[str, Any], calc: Calc, remarks: list[Remark]
     calc.given("t_cold", t_cold, "coldest of the cases and tie-in days")
     e_hot = calc.given("e_hot", both.max(axis=0), _words(pipe, expand, t_hot, calc))
     e_cold = calc.given("e_cold", both.min(axis=0), _words(pipe, expand, t_cold, calc))
-    e = calc(expansion.range_strain, e_hot=e_hot, e_cold=e_cold)
     nu = _per_row(pipe, lambda m: m.poisson)
     E_a = lookup.values_at(pipe, lookup.modulus, np.full(shape, REFERENCE), "pipe.material")
     calc.given("E_a", E_a, _words(pipe, lookup.modulus, np.array([REFERENCE]), calc))
-    e_P = np.zeros_like(case_strain)
-    pressures = np.stack([np.broadcast_to(c.pressure, shape) for c in duty.cases])
-    if (pressures > 0).any():
-        stretch = expansion.pressure_elongation(pressures, g["D_i"], nu, E_a, g["D_o"])
-        if duty.pressure_elongation:
-            e_P = stretch
-            e = e + e_P.max(axis=0)
-            words = "Pressure elongation of at most {e_P} is counted in growth and range."
-        else:
-            words = "Pressure elongation of at most {e_P} is not counted."
-        remarks.append(remark(words, pressures.max(axis=0) > 0, e_P=(stretch.max(axis=0), "strain")))
-        if calc.tracing and duty.pressure_elongation:
-            calc.say(remarks[-1].row(0).words())
+    # a vacuum shortens the run by next to nothing: not counted
+    pressures = np.stack([np.broadcast_to(np.maximum(c.pressure, 0.0), shape) for c in duty.cases])
+    stretch = {"P": pressures, "D_i": g["D_i"], "nu": nu, "E_a": E_a, "D_o": g["D_o"]}
+    e_P = expansion.pressure_elongation(**stretch)
+    under_pressure = pressures.max(axis=0) > 0
+    most = (e_P.max(axis=0), "strain")
+    if duty.pressure_elongation:
+        greatest, _ = calc.worst(
+            expansion.pressure_elongation, over="case", names=[c.name for c in duty.cases], **stretch
+        )
+        e = calc(expansion.range_strain_under_pressure, e_hot=e_hot, e_cold=e_cold, e_P=greatest)
+        words = "Pressure elongation of at most {e_P} is counted in growth and range."
+    else:
+        e_P = np.zeros_like(case_strain)
+        e = calc(expansion.range_strain, e_hot=e_hot, e_cold=e_cold)
+        words = "Pressure elongation of at most {e_P} is not counted."
+    remarks.append(remark(words, under_pressure, e_P=most))
     _remark_cold(design, t_cold, remarks)
     from_low, from_high = (case_strain + e_P - tie for tie in install_strain)
     case_growth = np.where(np.abs(from_low) >= np.abs(from_high), from_low, from_high)

@@ -62,7 +62,7 @@ def run(design: Design, basis: Basis, calc: Calc) -> Outcome:
         _sustained_check(design, basis, factors, felt, calc),
     ]
     results = {name: basis.pool[name] for name in ("w", "e", "E_a", "S_A", "f", "I", "Z")}
-    results |= {"S_E": found.S_E, "residual": _left(answer)} | held_rigidly(design, basis, calc)
+    results |= {"S_E": found.S_E} | held_rigidly(design, basis, calc)
     results |= _cold_spring(design, basis, model, answer, found, remarks, calc)
     severe = design.code.severe_cyclic
     if severe is not None:
@@ -74,6 +74,8 @@ def run(design: Design, basis: Basis, calc: Calc) -> Outcome:
     extra: dict[str, Any] = {}
     movements: tuple[Movement, ...] = ()
     if calc.tracing:
+        results["residual"] = _left(answer)
+        calc.say(f"Equilibrium of the run: force left over {_left(answer)[0]:.1e} N for a growth of one.")
         extra = {
             "shapes": shapes_of(design, basis, model, answer),
             "along": stress_along(model, sections, found),

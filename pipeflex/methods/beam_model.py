@@ -78,7 +78,7 @@ def build(
     Parameters
     ----------
     factors : flexibility factor k of each corner, (rows,).
-    rests : whether rests stand under the line: they can lift, so only a single design knows them.
+    rests : whether the weight acts, on the rests under the line: they can lift, so only a single design knows them.
     friction : factor at every shoe instead of the design's own; None takes those.
     without : tags of rests to leave out.
 
@@ -108,11 +108,12 @@ def build(
         poisson=basis.nu,
         radius=radius,
         bend_factor=np.stack([np.broadcast_to(k, (rows,)) for k in factors]),
-        weight=np.stack([s[2] for s in sections]),
+        weight=np.stack([s[2] for s in sections]) if rests else 0.0,
         supports=supports,
         weights=[
             PointWeight(force=w.mass * section.STANDARD_GRAVITY, leg=w.leg - 1, distance=w.distance, tag=w.name)
             for w in layout.weights
+            if rests
         ],
         breaks=breaks,
         ends=(_end(design, 0), _end(design, 1)),
