@@ -15,6 +15,14 @@ def range_strain(e_hot: Any, e_cold: Any) -> Any:
     return e_hot - e_cold
 
 
+@formula(
+    "e = e_hot - e_cold + e_P", ref="ASME B31.3 para. 319.2.3, with the pressure elongation on top: an upper bound"
+)
+def range_strain_under_pressure(e_hot: Any, e_cold: Any, e_P: Any) -> Any:
+    """Growth per length between coldest and hottest [-], the greatest pressure elongation added."""
+    return e_hot - e_cold + e_P
+
+
 @formula("e = e_1 - e_0", ref="growth counted from the installed temperature")
 def state_strain(e_1: Any, e_0: Any) -> Any:
     """Growth per length from the installed temperature to that of a state [-]; negative for a colder state."""

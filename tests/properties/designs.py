@@ -14,11 +14,18 @@ from pipeflex.model.design import Design
 from pipeflex.model.duty import Case, Duty, Limits
 from pipeflex.model.layout import Corner, End, Layout, Point, Segment, Support, Weight
 from pipeflex.model.outcome import Outcome
-from pipeflex.model.pipe import Pipe
+from pipeflex.model.pipe import Material, Pipe
 
 SHAPES = ("L", "Z", "U", "raised U", "straight", "points")
 SQUARE = ("L", "Z", "U")
 STEEL = table("pipe/asme_b36_10m")
+
+
+def named(error: PipeflexError) -> list[int]:
+    """Rows of an error, which names every field that is wrong in a line of its own."""
+    assert error.faults
+    assert all(fault.field and fault.text() and "\n" not in fault.text() for fault in error.faults), error
+    return sorted({row for fault in error.faults for row in fault.rows})
 
 
 def spoilt(rng, values, share):
@@ -26,6 +33,12 @@ def spoilt(rng, values, share):
     values = np.array(values, float)
     bad = rng.random(len(values)) < share
     return np.where(bad, rng.choice([0.0, -1.0, np.nan, np.inf, 1e9, 1e-12], len(values)), values)
+
+
+def last_temperature(one: Material) -> float:
+    """Where the first of the curves of a material ends [K]."""
+    curves = (one.expansion, one.modulus, *one.stresses.values(), *one.joined_stresses.values())
+    return min(float(c.temperature[-1]) for c in curves)
 
 
 class Maker:
@@ -44,8 +57,7 @@ class Maker:
         self.put("contents_density", rng.uniform(0, 1200, rows))
         self.put("corrosion_allowance", rng.choice([0.0, 0.0, 1e-3], rows))
         wide = 0.2 if share else 0.0
-        self.put("hot", rng.uniform(320 - 200 * wide, 640 + 1500 * wide, rows))
-        self.put("cold", rng.uniform(255 - 600 * wide, 275, rows))
+        self.put("cold", rng.uniform(256 - 600 * wide, 275, rows))
         self.put("pressure", rng.uniform(-1e5, 100e5, rows))
         self.put("install_low", rng.uniform(270, 280, rows))
         self.put("install_high", rng.uniform(285, 310, rows))
@@ -64,6 +76,8 @@ class Maker:
         sets = rng.choice(["current", "older"], 4)
         self.materials = tuple(material(str(k), str(e)) for k, e in zip(keys, sets, strict=True))
         self.numbers["material_row"] = rng.integers(0, 4, rows)
+        last = np.array([last_temperature(one) for one in self.materials])[self.numbers["material_row"]]
+        self.put("hot", rng.uniform(320 - 200 * wide, np.minimum(last, 640) + 800 * wide))
         self.flags = {k: bool(rng.random() < 0.4) for k in (
             "guide", "spacing", "stretch", "support", "weight", "segment", "moved", "sustained"
         )}  # fmt: skip
@@ -139,9 +153,7 @@ class Maker:
             try:
                 return self.design(), refused
             except PipeflexError as error:
-                assert str(error)
-                bad = {r for fault in error.faults for r in fault.rows}
-                bad = sorted(bad) if bad else list(range(self.rows))  # a fault of the skeleton, or of the only row
+                bad = named(error) or list(range(self.rows))  # a fault of the skeleton, or of the only row
                 refused += len(bad)
                 self.kept(np.setdiff1d(np.arange(self.rows), bad))
         return None, refused
