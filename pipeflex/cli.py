@@ -7,6 +7,7 @@ import argparse
 import codecs
 import io
 import os
+import re
 import sys
 import unicodedata
 from collections.abc import Sequence
@@ -30,10 +31,10 @@ INTERRUPTED, PIPE_CLOSED = 130, 141
 
 _MOST_FAULTS: Final = 20
 _ASCII: Final = {
-    "°": "deg ", "µ": "u", "μ": "u", "·": "*", "×": "x", "−": "-", "–": "-", "—": "-", "→": "->", "←": "<-",
-    "≤": "<=", "≥": ">=", "√": "sqrt", "Δ": "D", "δ": "delta", "α": "alpha", "π": "pi", "σ": "sigma", "ø": "o",
-    "ß": "ss", "“": '"', "”": '"', "‘": "'", "’": "'", "│": "|", "─": "-", "═": "=", "■": "#", "▲": "^",
+    "°": "deg", "µ": "u", "·": "*", "×": "x", "−": "-", "–": "-", "—": "-", "→": "->", "←": "<-", "≤": "<=", "≥": ">=",
+    "√": "sqrt", "ø": "o", "ß": "ss", "“": '"', "”": '"', "‘": "'", "’": "'", "│": "|", "─": "-", "═": "=",
 }  # fmt: skip
+_RAISED: Final = re.compile("[⁻⁰¹²³⁴-⁹]+")
 
 
 def main(argv: Sequence[str] | None = None) -> int:
@@ -273,12 +274,20 @@ def _encode_plainly() -> None:
 
 def _plain(error: UnicodeError) -> tuple[str, int]:
     assert isinstance(error, UnicodeEncodeError)
-    return "".join(map(_plain_letter, error.object[error.start : error.end])), error.end
+    letters = _RAISED.sub(lambda raised: "^" + raised[0], error.object[error.start : error.end])
+    return "".join(map(_plain_letter, letters)), error.end
 
 
 def _plain_letter(letter: str) -> str:
-    plain = unicodedata.normalize("NFKD", letter).encode("ascii", "ignore").decode()
-    return _ASCII.get(letter) or plain or "?"
+    if letter.isascii() or letter in _ASCII:
+        return _ASCII.get(letter, letter)
+    script, _, name = unicodedata.name(letter, "").rpartition(" LETTER ")
+    if script.startswith("GREEK"):
+        return name.lower().capitalize() if script.endswith("CAPITAL") else name.lower()
+    decomposed = unicodedata.normalize("NFKD", letter).replace("−", "-")
+    if "⁄" in decomposed:  # a fraction after a whole number stays one
+        decomposed = " " + decomposed.replace("⁄", "/")
+    return decomposed.encode("ascii", "ignore").decode() or "?"
 
 
 if __name__ == "__main__":

@@ -96,6 +96,14 @@ def test_a_terminal_that_knows_ascii_alone(command):
     assert done.stdout.decode("ascii").count("?") == full.count("?")
 
 
+def test_letters_that_a_terminal_lacks_are_written_plainly():
+    cli._encode_plainly()
+    text = "−10 °C, µm, m³, 10⁻⁶, √x ≤ 2½, δ, Σ, é, 漢"
+    assert text.encode("ascii", "pipeflex").decode() == "-10 degC, um, m^3, 10^-6, sqrtx <= 2 1/2, delta, Sigma, e, ?"
+    western = text.encode("cp1252", "pipeflex").decode("cp1252")
+    assert western == "-10 °C, µm, m³, 10^-6, sqrtx <= 2½, delta, Sigma, é, ?"
+
+
 def test_sheet_writes_a_page_and_never_over_another(design, tmp_path):
     page = tmp_path / "sheet.html"
     done = run("sheet", design, "-o", page, "--paper", "Letter", "--units", "us")
