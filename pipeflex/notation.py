@@ -21,7 +21,7 @@ _GLYPHS: Final = str.maketrans(
 _POWERS: Final = str.maketrans("⁻⁰¹²³⁴⁵⁶⁷⁸⁹", "-0123456789")
 _STRANGE: Final = re.compile(r"[^A-Za-z0-9 .,+\-*/^()'\"%_]")
 
-_WHOLE = r"(?:\d{1,3}(?: \d{3})+(?!\d)|\d+)"
+_WHOLE = r"(?:\d{1,3}(?: \d{3})+|\d+)"
 _DECIMAL = rf"(?:{_WHOLE}(?:\.\d*)?|\.\d+)(?:[eE][+-]?\d+)?"
 _FRACTION = r"(?:\d+[ -])?\d+/\d+"
 _AMOUNT = rf"(?:{_FRACTION}|{_DECIMAL})(?![\d.])"
