@@ -10,6 +10,7 @@ Everything is SI; z points up; axes are (state, component, item, row) with those
 """
 
 from pipeflex.mechanics.beam.history import Settled, settle
+from pipeflex.mechanics.beam.influence import Influence, influence
 from pipeflex.mechanics.beam.parts import Break, End, Hold, PointWeight, Section, States, Support
 from pipeflex.mechanics.beam.recover import (
     Moments,
@@ -27,6 +28,7 @@ __all__ = [
     "Break",
     "End",
     "Hold",
+    "Influence",
     "Moments",
     "Movements",
     "PointWeight",
@@ -36,6 +38,7 @@ __all__ = [
     "States",
     "Support",
     "assemble",
+    "influence",
     "linear",
     "moments",
     "movements",

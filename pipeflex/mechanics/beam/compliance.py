@@ -19,10 +19,12 @@ import numpy as np
 from numpy.typing import NDArray
 
 Array = NDArray[np.float64]
+Indices = NDArray[np.intp]
 
 UP = 2
 """Axis that points up: weight acts along -z."""
 
+_TINY = 1e-300
 _NODES, _WEIGHTS = np.polynomial.legendre.leggauss(12)
 
 
@@ -56,12 +58,21 @@ class Shape(NamedTuple):
 class Member(NamedTuple):
     """What the sweep needs of each element.
 
-    compliance : (6, 6, element, row) about O; chord : (3, element, row) [m]; bow : (6, element, row), twist per unit
-    of curvature [m]; load : (6, element, row), wrench of the element's own weight about O; sag : (6, element, row),
-    twist of its far end by its own weight.
+    An element has three directions (chord, towards the inside of the bend, normal) in which it yields without turning
+    and about which it turns.
+
+    axes : (3, direction, element, row), unit vectors; arms : the same shape, movement at O as it turns by one.
+    yields : (direction, element, row) [m/N]; turns : (direction, element, row) [rad/(N*m)].
+    chord : (3, element, row) [m].
+    bow : (6, element, row), twist per unit of curvature [m].
+    load : (6, element, row), wrench of the element's own weight about O.
+    sag : (6, element, row), twist of its far end by its own weight.
     """
 
-    compliance: Array
+    axes: Array
+    arms: Array
+    yields: Array
+    turns: Array
     chord: Array
     bow: Array
     load: Array
@@ -72,7 +83,7 @@ def cross(a: Array, b: Array) -> Array:
     """Vector product along the first axis; the other axes broadcast."""
     a0, a1, a2 = a
     b0, b1, b2 = b
-    return np.stack([a1 * b2 - a2 * b1, a2 * b0 - a0 * b2, a0 * b1 - a1 * b0])
+    return np.array([a1 * b2 - a2 * b1, a2 * b0 - a0 * b2, a0 * b1 - a1 * b0])
 
 
 def dot(a: Array, b: Array) -> Array:
@@ -81,35 +92,13 @@ def dot(a: Array, b: Array) -> Array:
     return product
 
 
-def _outer(a: Array, b: Array) -> Array:
-    return a[:, None] * b[None]
-
-
-_EYE = np.eye(3)[:, :, None, None]
-
-
-def _about_origin(ff: Array, fm: Array | None, mm: Array, q: Array) -> Array:
-    """Compliance known about the point q, moved to O."""
-    moved = cross(q[:, None], mm)
-    c = np.empty((6, 6, *mm.shape[2:]))
-    if fm is None:
-        fm = moved
-    else:
-        ff = ff + cross(q[:, None], fm.swapaxes(0, 1))
-        fm = fm + moved
-    c[:3, :3] = ff + cross(q[:, None], fm.swapaxes(0, 1)).swapaxes(0, 1)
-    c[:3, 3:] = fm
-    c[3:, :3] = fm.swapaxes(0, 1)
-    c[3:, 3:] = mm
-    return c
-
-
 def _twist(movement: Array, rotation: Array, q: Array) -> Array:
     """Twist about O of a body that moves so at q."""
     return np.concatenate([movement + cross(q, rotation), rotation])
 
 
 def _wrench(force: Array, q: Array) -> Array:
+    """Wrench about O of a force at q."""
     return np.concatenate([force, cross(q, force)])
 
 
@@ -118,80 +107,133 @@ def _rotated_up(vector: Array) -> Array:
     return np.stack([-vector[1], vector[0], np.zeros_like(vector[0])])
 
 
-def straights(shape: Shape, prop: Properties, weighs: bool = True) -> Member:
-    """Straight elements.
+def members(shape: Shape, prop: Properties, bent: Indices, weighs: bool = True) -> Member:
+    """Straights and exact circular bends.
 
     Parameters
     ----------
-    shape : angle and radius are not read.
-    prop : stiffness and weight.
+    shape : centre line; angle and radius are 0 on straights.
+    prop : stiffness; on bends the bending stiffness is E I / k, k acting on bending in and out of plane.
+    bent : indices of the bends.
     weighs : False leaves the terms of weight zero.
     """
     along, length = shape.along, shape.length
-    middle = shape.start + 0.5 * length * along
+    axes = np.empty((3, 3, *length.shape))
+    axes[:, 0], axes[:, 1] = along, shape.inward
+    yields, turns = np.empty((3, *length.shape)), np.empty((3, *length.shape))
     bending = length / prop.bending
-    axis = _outer(along, along)
-    across = length * length / 12.0 * bending
-    ff = (length / prop.axial - across) * axis + across * _EYE
-    mm = (length / prop.torsion - bending) * axis + bending * _EYE
-    c = _about_origin(ff, None, mm, middle)
-    chord = length * along
+    yields[0], yields[1:] = length / prop.axial, length * length * bending / 12.0
+    turns[0], turns[1:] = length / prop.torsion, bending
+    middle = shape.start + 0.5 * length * along
+    other, chord, turned = middle, length * along, middle
+    shift = np.zeros_like(middle)
+    if len(bent):
+        other, chord, turned = middle.copy(), chord, middle.copy()
+        _bend(shape, prop, bent, axes, yields, turns, (middle, other, chord, turned, shift))
+    axes[:, 2] = cross(axes[:, 0], axes[:, 1])
+    arms = np.empty_like(axes)
+    arms[:, 2] = cross(middle, axes[:, 2])
+    arms[:, :2] = cross(other[:, None], axes[:, :2])
     turn = _rotated_up(chord)
-    bow = _twist(np.zeros_like(turn), turn, middle)
-    load = np.zeros_like(bow)
-    sag = np.zeros_like(bow)
+    bow = _twist(shift, turn, turned)
+    load, sag = np.zeros_like(bow), np.zeros_like(bow)
     if weighs:
         down = np.zeros_like(chord)
         down[UP] = -prop.weight
         load = _wrench(length * down, middle)
-        lengthwise = dot(down, along) * along
-        crosswise = down - lengthwise
-        end_move = length**2 * (
-            crosswise * (length**2 / (8.0 * prop.bending)) + lengthwise * (0.5 / prop.axial)
-        )
-        sag = _twist(
-            end_move, cross(along, crosswise) * (length**3 / (6.0 * prop.bending)), shape.start + chord
-        )
-    return Member(c, chord, bow, load, sag)
+        sag = _straight_sag(shape, prop, down)
+        if len(bent):
+            part, soft = Shape(*(f[..., bent, :] for f in shape)), Properties(*(f[bent] for f in prop))
+            sag[:, bent] = _bend_sag(part, soft, axes[:, 2, bent], turned[:, bent])
+    return Member(axes, arms, yields, turns, chord, bow, load, sag)
 
 
-def bends(shape: Shape, prop: Properties, weighs: bool = True) -> Member:
-    """Exact circular bends; `prop.bending` is E I / k, the flexibility factor k acting on both bending directions.
+def _bend(
+    shape: Shape,
+    prop: Properties,
+    bent: Indices,
+    axes: Array,
+    yields: Array,
+    turns: Array,
+    points: tuple[Array, ...],
+) -> None:
+    """Put the bends in: directions, softness, and the points at which yielding and turning part.
+
+    In the plane that is the arc's centroid; out of it the point at which a force square to the plane does not twist
+    the chord.
+    """
+    middle, other, chord, centre, shift = points
+    along, inward = shape.along[:, bent], shape.inward[:, bent]
+    radius, angle = shape.radius[bent], shape.angle[bent]
+    arc, half = radius * angle, 0.5 * angle
+    sin_half, cos_half = np.sin(half), np.cos(half)
+    tau = cos_half * along + sin_half * inward
+    beta = cos_half * inward - sin_half * along
+    about = shape.start[:, bent] + radius * inward
+    sine = 2.0 * sin_half * cos_half
+    plus, minus = 0.5 * radius * (angle + sine), 0.5 * radius * (angle - sine)
+    soft, twisting, stretch = 1.0 / prop.bending[bent], 1.0 / prop.torsion[bent], 1.0 / prop.axial[bent]
+    span = 2.0 * radius * sin_half
+    inner = radius * np.sinc(half / np.pi)
+    turn = twisting * plus + soft * minus
+    couple = radius * span * twisting
+    outer = couple / (turn + _TINY)
+    axes[:, 0, bent], axes[:, 1, bent] = tau, beta
+    yields[0, bent] = stretch * plus + soft * (radius**2 * plus - inner**2 * arc)
+    yields[1, bent] = (stretch + radius**2 * soft) * minus
+    yields[2, bent] = radius**2 * arc * twisting - couple * outer
+    turns[0, bent], turns[1, bent], turns[2, bent] = turn, twisting * minus + soft * plus, soft * arc
+    middle[:, bent], other[:, bent], centre[:, bent] = about - inner * beta, about - outer * beta, about
+    chord[:, bent] = span * tau
+    shift[:, bent] = radius * (plus * beta[UP] * tau - minus * tau[UP] * beta)
+
+
+def _straight_sag(shape: Shape, prop: Properties, down: Array) -> Array:
+    """Twist of a straight's far end by its own weight: ordinary cantilever formulas."""
+    along, length = shape.along, shape.length
+    lengthwise = dot(down, along) * along
+    crosswise = down - lengthwise
+    moved = length**2 * (crosswise * (length**2 / (8.0 * prop.bending)) + lengthwise * (0.5 / prop.axial))
+    turned = cross(along, crosswise) * (length**3 / (6.0 * prop.bending))
+    return _twist(moved, turned, shape.start + length * along)
+
+
+def yielding(member: Member, wrench: Array) -> Array:
+    """Twist of every element under wrenches (state, 6, element, row)."""
+    force, moment = wrench[:, :3, None], wrench[:, 3:, None]
+    push = member.yields * (member.axes * force).sum(axis=1)
+    turn = member.turns * ((member.arms * force).sum(axis=1) + (member.axes * moment).sum(axis=1))
+    moved = (member.axes * push[:, None] + member.arms * turn[:, None]).sum(axis=2)
+    return np.concatenate([moved, (member.axes * turn[:, None]).sum(axis=2)], axis=1)
+
+
+def compliance(member: Member, parts: tuple[int, ...], directions: tuple[int, ...], work: Array) -> Array:
+    """Compliance about O, (part, part, element, row).
 
     Parameters
     ----------
-    shape : centre line.
-    prop : stiffness and weight.
-    weighs : False leaves the terms of weight zero.
+    member : the elements.
+    parts : components of the twist wanted.
+    directions : in which the elements turn; those of yielding follow.
+    work : (2, part, part, element, row), overwritten; the answer is its first half.
     """
-    along, inward, radius, angle = shape.along, shape.inward, shape.radius, shape.angle
-    arc = radius * angle
-    sin_half, cos_half = np.sin(0.5 * angle), np.cos(0.5 * angle)
-    tau = cos_half * along + sin_half * inward
-    beta = cos_half * inward - sin_half * along
-    normal = cross(along, inward)
-    centre = shape.start + radius * inward
-    plus, minus = 0.5 * (arc + radius * np.sin(angle)), 0.5 * (arc - radius * np.sin(angle))
-    tau2, beta2, normal2 = _outer(tau, tau), _outer(beta, beta), _outer(normal, normal)
-    tangents = plus * tau2 + minus * beta2
-    soft = 1.0 / prop.bending
-    twist_soft = 1.0 / prop.torsion
-    chord = 2.0 * radius * sin_half * tau
-    ff = (1.0 / prop.axial + radius**2 * soft) * tangents + (radius**2 * arc * twist_soft) * normal2
-    fm = radius * (twist_soft * _outer(normal, chord) - soft * _outer(chord, normal))
-    mm = twist_soft * tangents + soft * (minus * tau2 + plus * beta2 + arc * normal2)
-    c = _about_origin(ff, fm, mm, centre)
-    turn = _rotated_up(chord)
-    shift = radius * (plus * beta[UP] * tau - minus * tau[UP] * beta)
-    bow = _twist(shift, turn, centre)
-    load = np.zeros_like(bow)
-    sag = np.zeros_like(bow)
-    if weighs:
-        down = np.zeros_like(chord)
-        down[UP] = -prop.weight * arc
-        load = _wrench(down, centre - radius * np.sinc(angle / (2.0 * np.pi)) * beta)
-        sag = _bend_sag(shape, prop, normal, centre)
-    return Member(c, chord, bow, load, sag)
+    c: Array = work[0]
+    extra: Array = work[1]
+    moves = [i for i in parts if i < 3]
+    turns = [i - 3 for i in parts if i >= 3]
+    whole = np.concatenate([member.arms[moves], member.axes[turns]])
+    for n, k in enumerate(directions):
+        z = whole[:, k]
+        target = extra if n else c
+        np.multiply((member.turns[k] * z)[:, None], z[None], out=target)
+        if n:
+            c += extra
+    top, spare = c[: len(moves), : len(moves)], extra[: len(moves), : len(moves)]
+    for k in [i for i in range(3) if len(parts) == 6 or i not in directions]:
+        z = member.axes[moves, k]
+        np.multiply((member.yields[k] * z)[:, None], z[None], out=spare)
+        top += spare
+    return c
 
 
 def _bend_sag(shape: Shape, prop: Properties, normal: Array, centre: Array) -> Array:

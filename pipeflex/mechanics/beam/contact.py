@@ -18,8 +18,7 @@ from dataclasses import dataclass
 import numpy as np
 from numpy.typing import NDArray
 
-from pipeflex.mechanics.beam.compliance import Array
-from pipeflex.mechanics.beam.run import Indices
+from pipeflex.mechanics.beam.compliance import Array, Indices
 
 _NEWTON = 100
 _MULTIPLIER = 50

@@ -4,18 +4,11 @@ from dataclasses import dataclass
 
 import numpy as np
 
-from pipeflex.mechanics.beam.compliance import (
-    Array,
-    Member,
-    Properties,
-    Shape,
-    bends,
-    cross,
-    dot,
-    straights,
-)
+from pipeflex.errors import Fault, InputError, refuse
+from pipeflex.mechanics.beam import compliance
+from pipeflex.mechanics.beam.compliance import Array, Indices, Member, Properties, Shape, cross, dot
 from pipeflex.mechanics.beam.parts import Hold, States, states_first
-from pipeflex.mechanics.beam.run import CHUNK, Indices, Run
+from pipeflex.mechanics.beam.run import CHUNK, Run
 
 _VERTICAL = 1e-6
 
@@ -131,18 +124,7 @@ def members(made: Elements, run: Run) -> Member:
 
 def of_shape(made: Elements, run: Run) -> Member:
     """Compliance, growth, bow and weight terms of the elements given."""
-    weighs = bool(run.weight.any())
-    shape, prop, bent = made.shape, made.prop, made.bent
-    if not len(bent):
-        return straights(shape, prop, weighs)
-    whole = [np.empty((*lead, *shape.length.shape)) for lead in ((6, 6), (3,), (6,), (6,), (6,))]
-    for which, rule in ((made.straight, straights), (bent, bends)):
-        part = rule(
-            Shape(*(field[..., which, :] for field in shape)), Properties(*(p[which] for p in prop)), weighs
-        )
-        for target, values in zip(whole, part, strict=True):
-            target[..., which, :] = values
-    return Member(*whole)
+    return compliance.members(made.shape, made.prop, made.bent, bool(run.weight.any()))
 
 
 def station_points(made: Elements, station: Indices) -> Array:
@@ -167,9 +149,9 @@ def holds(run: Run, made: Elements) -> Holds:
         which = np.flatnonzero(words == word)
         unit[:, which] = axes[:, support[which]]
     unit[2, words == "vertical"] = 1.0
-    for j in np.flatnonzero(words == ""):
-        vector = np.asarray(given[j][1].direction, dtype=float)
-        unit[:, j] = (vector / np.sqrt(vector @ vector))[:, None]
+    for j in np.flatnonzero(words == "").tolist():
+        unit[:, j] = np.reshape(given[j][1].direction, (3, 1))
+    _unit_length(run, unit, support)
     for j, (_, hold) in enumerate(given):
         softness[j] = hold.stiffness if np.ndim(hold.stiffness) == 0 else hold.stiffness[made.rows]  # type: ignore[index]
     with np.errstate(divide="ignore"):
@@ -179,6 +161,26 @@ def holds(run: Run, made: Elements) -> Holds:
     return Holds(np.concatenate([unit, cross(point, unit)]), unit, softness, station, support)
 
 
+def _unit_length(run: Run, unit: Array, support: Indices) -> None:
+    size = np.sqrt(dot(unit, unit))
+    if not (size > 0.0).all():
+        refuse(
+            InputError,
+            *(
+                (
+                    ~(size[j] > 0.0),
+                    Fault(
+                        f"support {run.supports[support[j]].tag or support[j]}",
+                        "a direction without length",
+                        "on a vertical leg nothing is lateral: give a vector; else a vector that is not zero",
+                    ),
+                )
+                for j in range(len(size))
+            ),
+        )
+    unit /= size
+
+
 def support_axes(run: Run, made: Elements) -> tuple[Array, Array]:
     """Unit vectors along the pipe and lateral to it at every support, (3, support, row); lateral is 0 on risers."""
     station = np.minimum(run.plan.support_station, len(made.shape.length) - 1)
@@ -186,13 +188,13 @@ def support_axes(run: Run, made: Elements) -> tuple[Array, Array]:
     square = np.array([s.bend is not None for s in run.supports]) & (made.shape.angle[station] == 0).all(
         axis=1
     )
-    for i in np.flatnonzero(square):
+    for i in np.flatnonzero(square).tolist():
         bend = run.supports[i].bend
         half = 0.5 * run.angle[bend, made.rows]
         along[:, i] = (
             np.cos(half) * run.along[:, bend, made.rows] + np.sin(half) * run.inward[:, bend, made.rows]
         )
-    flat = np.stack([-along[1], along[0], np.zeros_like(along[0])])
+    flat = np.array([-along[1], along[0], np.zeros_like(along[0])])
     size = np.sqrt(dot(flat, flat))
     lateral = np.where(size > _VERTICAL, flat / np.where(size > _VERTICAL, size, 1.0), 0.0)
     return along, lateral

@@ -16,7 +16,7 @@ import numpy as np
 from numpy.typing import NDArray
 
 from pipeflex.errors import Fault, InputError, refuse
-from pipeflex.mechanics.beam.compliance import Array, cross
+from pipeflex.mechanics.beam.compliance import Array, Indices, cross
 from pipeflex.mechanics.beam.contact import Balance, Laws, balance
 from pipeflex.mechanics.beam.elements import (
     Elements,
@@ -28,7 +28,7 @@ from pipeflex.mechanics.beam.elements import (
     support_axes,
 )
 from pipeflex.mechanics.beam.parts import States
-from pipeflex.mechanics.beam.run import Indices, Run
+from pipeflex.mechanics.beam.run import Run
 from pipeflex.mechanics.beam.sweep import Answer, free_twists, on_supports, sweep
 
 _LIMIT_ROUNDS = 60
@@ -137,7 +137,10 @@ def _pressing(model: _Model, plain: Array, force: Array) -> Array:
     """What presses on each support: its plain holds and its contacts [N]."""
     size = len(model.friction)
     own = np.bincount(model.held.support[: len(plain)], np.abs(plain), minlength=size)
-    return own + np.bincount(model.support, np.where(model.hold >= 0, np.abs(force), 0.0), minlength=size)
+    total: Array = own + np.bincount(
+        model.support, np.where(model.hold >= 0, np.abs(force), 0.0), minlength=size
+    )
+    return total
 
 
 def _step(
@@ -188,7 +191,7 @@ def _model(run: Run, made: Elements, held: Holds) -> _Model:
     dof, partner = list(range(len(hold))), list(range(len(hold)))
     along, lateral = support_axes(run, made)
     for i in np.flatnonzero(friction > 0):
-        mine = np.flatnonzero(exists & (held.support == i))
+        mine = np.flatnonzero(exists & (held.support == i)).tolist()
         fixed = [held.unit[:, j, 0] for j in mine if gap[j] == 0.0]
         shared = [hold.index(j) for j in mine if gap[j] > 0.0]
         flat = lateral[:, i, 0]
@@ -257,7 +260,7 @@ def _closed(run: Run, states: States, made: Elements, model: _Model) -> tuple[Ar
     return sweep(
         run,
         made,
-        member.compliance,
+        member,
         model.held,
         padded(free),
         None if loads is None else padded(loads),
@@ -266,6 +269,14 @@ def _closed(run: Run, states: States, made: Elements, model: _Model) -> tuple[Ar
         padded(moved_b),
         target,
     )
+
+
+def _gathered(values: Array, index: Indices, size: int) -> Array:
+    """Columns of `values` summed where `index` sends them."""
+    sums = np.zeros((len(values), size))
+    for column, i in enumerate(index.tolist()):
+        sums[:, i] += values[:, column]
+    return sums
 
 
 def _settled(
@@ -286,12 +297,9 @@ def _settled(
     hold_force[:, model.plain] = closed[:, :first]
     is_hold = model.hold >= 0
     hold_force[:, model.hold[is_hold], 0] = -force[:, is_hold]
-    dofs = np.zeros((count, closed.shape[1] - first))
-    np.add.at(dofs, (slice(None), model.laws.dof), -force)
-    closed[:, first:, 0] = dofs
-    squares, pressed = np.zeros((count, supports)), np.zeros((count, supports))
-    np.add.at(squares, (slice(None), model.support[~is_hold]), force[:, ~is_hold] ** 2)
-    np.add.at(pressed, (slice(None), model.support[is_hold]), np.abs(force[:, is_hold]))
+    closed[:, first:, 0] = -_gathered(force, model.laws.dof, closed.shape[1] - first)
+    squares = _gathered(force[:, ~is_hold] ** 2, model.support[~is_hold], supports)
+    pressed = _gathered(np.abs(force[:, is_hold]), model.support[is_hold], supports)
     friction = np.sqrt(squares)
     pressing = np.array([normal(s, one) for s, one in enumerate(found)]).reshape(count, supports)
     return Settled(

@@ -122,7 +122,7 @@ class States:
     def count(self) -> int:
         """Number of states."""
         fields = (self.strain, self.bend_strain, self.bow, self.weight, self.movement_a, self.movement_b)
-        return max(np.shape(f)[0] if np.ndim(f) else 1 for f in fields if f is not None)
+        return max(f.shape[0] if isinstance(f, np.ndarray) and f.ndim else 1 for f in fields)
 
 
 Placed = Support | PointWeight | Break

@@ -5,7 +5,7 @@ from dataclasses import dataclass
 
 import numpy as np
 
-from pipeflex.mechanics.beam.compliance import UP, Array, Properties, Shape, cross, dot
+from pipeflex.mechanics.beam.compliance import UP, Array, Properties, Shape, cross, dot, yielding
 from pipeflex.mechanics.beam.elements import Elements, chunks, elements, members, of_shape, station_points
 from pipeflex.mechanics.beam.parts import States
 from pipeflex.mechanics.beam.run import Run
@@ -157,7 +157,7 @@ def _twists(answer: Answer, made: Elements) -> Array:
     """Twist about O at every station, (state, 6, station, row)."""
     member = members(made, answer.run)
     free = free_twists(answer.run, answer.states, made, member)[0]
-    return twists(member.compliance, free, answer.wrench[..., made.rows], answer.start[..., made.rows])
+    return twists(member, free, answer.wrench[..., made.rows], answer.start[..., made.rows])
 
 
 def _moved(twist: Array, point: Array) -> Array:
@@ -201,11 +201,7 @@ def _movements(answer: Answer, made: Elements, fractions: Sequence[float]) -> tu
         member = of_shape(part, run)
         force, moment = _beyond(made, weight, np.full(weight.shape, fraction))
         there = wrench + np.concatenate([force, moment]).swapaxes(0, 1)
-        twist = (
-            start
-            + free_twists(run, answer.states, part, member)[0]
-            + np.einsum("ijer,sjer->sier", member.compliance, there)
-        )
+        twist = start + free_twists(run, answer.states, part, member)[0] + yielding(member, there)
         point = shape.start + member.chord
         points.append(point + run.origin[:, None, made.rows])
         moved.append(_moved(twist, point))
@@ -256,4 +252,5 @@ def _reactions(answer: Answer, made: Elements) -> Array:
         return a + b
     point = station_points(made, answer.run.plan.support_station)
     turning = cross(point[:, None], on_supports.swapaxes(0, 1)).swapaxes(0, 1)
-    return a + b + np.concatenate([on_supports, turning], axis=1).sum(axis=2)
+    total: Array = a + b + np.concatenate([on_supports, turning], axis=1).sum(axis=2)
+    return total

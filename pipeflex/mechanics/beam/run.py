@@ -8,13 +8,10 @@ from dataclasses import dataclass, field
 from itertools import pairwise
 
 import numpy as np
-from numpy.typing import NDArray
 
 from pipeflex.errors import Fault, InputError, refuse
-from pipeflex.mechanics.beam.compliance import Array, cross, dot
+from pipeflex.mechanics.beam.compliance import Array, Indices, cross, dot
 from pipeflex.mechanics.beam.parts import Break, End, Number, Placed, PointWeight, Section, Support
-
-Indices = NDArray[np.intp]
 
 CHUNK = 1024
 """Rows worked on at a time, so that they stay in the cache."""
@@ -31,6 +28,7 @@ class Plan:
     first, last : per element, index into `Run.cuts` of a straight's ends.
     begin, part : per element, fraction of the bend before and in it.
     support_station, weight_station : station (element that begins there) of each support and concentrated weight.
+    bend_piece : piece before each bend; the next one is after it.
     """
 
     leg: Indices
@@ -42,6 +40,7 @@ class Plan:
     part: Array
     support_station: Indices
     weight_station: Indices
+    bend_piece: Indices
 
 
 @dataclass(frozen=True, slots=True, eq=False)
@@ -132,9 +131,9 @@ def assemble(
 
     def per_piece(value: Number, name: str, positive: bool = True) -> Array:
         value = _spread(value, (pieces, rows), name)
-        wrong = ~(np.isfinite(value) & ((value > 0) if positive else (value >= 0)))
-        if wrong.any():
-            refuse(InputError, (wrong.any(axis=0), Fault(name, value[wrong][0], "positive and finite")))
+        fits = ((value > 0) if positive else (value >= 0)) & (value < np.inf)
+        if not fits.all():
+            refuse(InputError, (~fits.all(axis=0), Fault(name, value[~fits][0], "positive and finite")))
         return value
 
     e = per_piece(modulus, "modulus")
@@ -142,11 +141,12 @@ def assemble(
     torsion = 2.0 * inertia if section.torsion is None else per_piece(section.torsion, "section.torsion")
     radius = _spread(radius, (legs - 1, rows), "radius")
     factor = _spread(bend_factor, (legs - 1, rows), "bend_factor")
-    refuse(
-        InputError,
-        (~(radius >= 0).all(axis=0), Fault("radius", None, "0 or more")),
-        (~(factor >= 1.0).all(axis=0), Fault("bend_factor", None, "at least 1")),
-    )
+    if not ((radius >= 0).all() and (factor >= 1.0).all()):
+        refuse(
+            InputError,
+            (~(radius >= 0).all(axis=0), Fault("radius", None, "0 or more")),
+            (~(factor >= 1.0).all(axis=0), Fault("bend_factor", None, "at least 1")),
+        )
     origin = corners[:, 0]
     local = corners - origin[:, None]
     along, lengths, angle, inward, tangents = geometry(local, radius)
@@ -180,36 +180,34 @@ def assemble(
 
 
 def _spread(value: Number, shape: tuple[int, int], name: str) -> Array:
-    value = np.asarray(value, dtype=float)
+    whole = np.empty(shape)
     try:
-        return np.broadcast_to(value, shape)
+        whole[...] = value
     except ValueError:
-        raise InputError(Fault(name, f"shape {value.shape}", f"shape {shape}")) from None
+        raise InputError(Fault(name, f"shape {np.shape(value)}", f"shape {shape}")) from None
+    return whole
 
 
 def _check_shape(corners: Array) -> None:
     wrong = corners.ndim != 3 or corners.shape[0] != 3 or corners.shape[1] < 2
     refuse(InputError, (wrong, Fault("corners", f"shape {corners.shape}", "shape (3, 2 or more, rows)")))
     finite = np.isfinite(corners).all(axis=(0, 1))
-    refuse(InputError, (~finite, Fault("corners", "not a number", "finite coordinates")))
+    if not finite.all():
+        refuse(InputError, (~finite, Fault("corners", "not a number", "finite coordinates")))
 
 
 def _check_places(placed: tuple[Placed, ...], legs: int) -> None:
     bad = []
     for thing in placed:
-        on_leg, on_bend = thing.leg is not None, thing.bend is not None
-        name = _name(thing)
-        bad.append((on_leg == on_bend, Fault(name, None, "either on a leg or on a bend")))
-        bad.append(
-            (on_leg and not 0 <= (thing.leg or 0) < legs, Fault(f"{name}.leg", thing.leg, f"0 .. {legs - 1}"))
-        )
-        bad.append(
-            (
-                on_bend and not 0 <= (thing.bend or 0) < legs - 1,
-                Fault(f"{name}.bend", thing.bend, f"0 .. {legs - 2}"),
-            )
-        )
-    refuse(InputError, *bad)
+        name, leg, bend = _name(thing), thing.leg, thing.bend
+        if (leg is None) == (bend is None):
+            bad.append((True, Fault(name, None, "either on a leg or on a bend")))
+        if leg is not None and not 0 <= leg < legs:
+            bad.append((True, Fault(f"{name}.leg", leg, f"0 .. {legs - 1}")))
+        if bend is not None and not 0 <= bend < legs - 1:
+            bad.append((True, Fault(f"{name}.bend", bend, f"0 .. {legs - 2}")))
+    if bad:
+        refuse(InputError, *bad)
 
 
 def _name(thing: Placed) -> str:
@@ -288,6 +286,7 @@ def _plan(
     table: list[tuple[int, int, int, int, int, float, float]] = []
     station = [0] * len(placed)
     piece = 0
+    before: list[int] = []
     for leg in range(legs):
         things = on_leg[leg]
         things.sort(key=lambda i: distances[i, 0])
@@ -306,13 +305,26 @@ def _plan(
                 if middle and not half:
                     for i in on_bend[leg]:
                         station[i] = len(table)
+            before.append(piece)
             piece += 1
     columns = list(zip(*table, strict=True))
-    whole = np.array(columns[:5], dtype=np.intp)
+    leg_, piece_, bend_, first, last = np.array(columns[:5], dtype=np.intp)
     b, s = len(breaks), len(breaks) + len(supports)
     stations = np.array(station, dtype=np.intp)
     begin, part = np.array(columns[5:])
-    return Plan(*whole, begin, part, stations[b:s], stations[s:]), on_leg
+    plan = Plan(
+        leg=leg_,
+        piece=piece_,
+        bend=bend_,
+        first=first,
+        last=last,
+        begin=begin,
+        part=part,
+        support_station=stations[b:s],
+        weight_station=stations[s:],
+        bend_piece=np.array(before, dtype=np.intp),
+    )
+    return plan, on_leg
 
 
 def _check_on_straight(
@@ -325,7 +337,8 @@ def _check_on_straight(
 ) -> None:
     legs = np.array([-1 if thing.leg is None else thing.leg for thing in placed], dtype=np.intp)
     slack = _TOUCHING * lengths[legs]
-    wrong = ~((distances >= start[legs] - slack) & (distances <= end[legs] + slack)) & (legs >= 0)[:, None]
+    on: NDArray[np.bool_] = (distances >= start[legs] - slack) & (distances <= end[legs] + slack)
+    wrong = ~on & (legs >= 0)[:, None]
     if wrong.any():
         refuse(
             InputError,

@@ -15,7 +15,7 @@ from dataclasses import dataclass
 import numpy as np
 
 from pipeflex.errors import Fault, UnstableLayoutError, refuse
-from pipeflex.mechanics.beam.compliance import UP, Array, Member, cross
+from pipeflex.mechanics.beam.compliance import UP, Array, Indices, Member, compliance, cross, yielding
 from pipeflex.mechanics.beam.elements import (
     Elements,
     Holds,
@@ -31,6 +31,9 @@ from pipeflex.mechanics.beam.run import Run
 
 _SAME = 1e-12
 _FLOATS = 1e-11
+_END_B, _END_A = -1, -7
+
+Work = dict[tuple[int, ...], Array]
 
 
 @dataclass(frozen=True, slots=True, eq=False)
@@ -76,10 +79,11 @@ def linear(run: Run, states: States) -> Answer:
         The run floats, or two rigid holds act at one place in one direction.
     """
     parts = []
+    work: Work = {}
     for made in (elements(run, rows) for rows in chunks(run)):
         held, member = holds(run, made), members(made, run)
         wrench, force, *rest = sweep(
-            run, made, member.compliance, held, *free_twists(run, states, made, member)
+            run, made, member, held, *free_twists(run, states, made, member), work=work
         )
         parts.append((wrench, force, on_supports(run, held, force), *rest))
     if len(parts) == 1:
@@ -122,11 +126,10 @@ def free_twists(
     return free, loads, jumps, moved[0], moved[1]
 
 
-def twists(compliance: Array, free: Array, wrench: Array, start: Array) -> Array:
+def twists(member: Member, free: Array, wrench: Array, start: Array) -> Array:
     """Twist about O at every station, (state, 6, station, row)."""
-    steps = free + np.einsum("ijer,sjer->sier", compliance, wrench)
     first = start[:, :, None]
-    return np.concatenate([first, first + np.cumsum(steps, axis=2)], axis=2)
+    return np.concatenate([first, first + np.cumsum(free + yielding(member, wrench), axis=2)], axis=2)
 
 
 def point_wrenches(run: Run, made: Elements) -> Array:
@@ -153,16 +156,16 @@ def end_lines(point: Array) -> Array:
 
 
 def _stiffness(run: Run, end: int, rows: slice) -> Array:
-    size = run.rows
-    return np.stack(
-        [np.broadcast_to(np.asarray(k, dtype=float), (size,))[rows] for k in run.ends[end].stiffness]
-    )
+    whole = np.empty((6, run.rows))
+    for i, stiffness in enumerate(run.ends[end].stiffness):
+        whole[i] = stiffness
+    return whole[:, rows]
 
 
 def sweep(
     run: Run,
     made: Elements,
-    compliance: Array,
+    member: Member,
     held: Holds,
     free: Array,
     loads: Array | None,
@@ -170,97 +173,193 @@ def sweep(
     moved_a: Array,
     moved_b: Array,
     target: Array | None = None,
+    work: Work | None = None,
 ) -> tuple[Array, Array, Array, Array, Array]:
     """Forces from free twists and loads.
 
+    A run in a coordinate plane whose holds are in the plane or square to it falls into two independent halves, of
+    which one without cause is left out.
+
     Parameters
     ----------
-    compliance : (6, 6, element, row).
     free : (state, 6, element, row), twist of each element's far end against its near end without force.
     loads : (state, 6, element, row), wrench of the loads on each element.
     jumps : (state, 6, station, row), wrench applied at each station.
     moved_a, moved_b : (state, 6, row), imposed movement of the ends.
     target : (state, hold, row), imposed movement of the holds; 0 unless given.
+    work : kept from chunk to chunk.
 
     Returns
     -------
     wrench, hold_force, end_a, end_b, start : see `Answer`.
     """
     count, _, n, rows = free.shape
-    stiff_a = _stiffness(run, 0, made.rows)
-    loose = np.flatnonzero((stiff_a == 0).any(axis=1))
-    size = 6 + len(loose)
-    c, prop = np.zeros((size, size, rows)), _prop(made)
-    t = np.zeros((count, size, rows))
-    t[:, :6] = moved_a
-    if len(loose):
-        prop[loose] = np.where(stiff_a[loose] == 0, prop[loose], stiff_a[loose])
-        stiff_a = np.where(stiff_a == 0, prop, stiff_a)
-    with np.errstate(divide="ignore"):
-        for i in np.flatnonzero(np.isfinite(stiff_a).any(axis=1)):
-            c[i, i] = 1.0 / stiff_a[i]
+    out = (
+        np.zeros((count, 6, n, rows)),
+        np.zeros((count, held.line.shape[1], rows)),
+        np.zeros((count, 6, rows)),
+        np.zeros((count, 6, rows)),
+        np.zeros((count, 6, rows)),
+    )
+    work = {} if work is None else work
+    for parts, directions, which in _halves(run, made, held):
+        pick = list(parts)
+        strain, at_a, at_b = free[:, pick], moved_a[:, pick], moved_b[:, pick]
+        load, jump = (None if a is None else a[:, pick] for a in (loads, jumps))
+        pushed = None if target is None else target[:, which]
+        causes = (strain, load, jump, at_a, at_b, pushed)
+        if len(parts) < 6 and not any(a is not None and a.any() for a in causes):
+            continue
+        part = _Half(run, made, held, parts, which)
+        key = (len(parts), n, rows)
+        if key not in work:
+            work[key] = np.empty((2, len(parts), len(parts), n, rows))
+        c = compliance(member, parts, directions, work[key])
+        wrench, force, end_a, end_b, start = part.solve(c, strain, load, jump, at_a, at_b, pushed)
+        out[0][:, pick], out[1][:, which] = wrench, force
+        out[2][:, pick], out[3][:, pick], out[4][:, pick] = end_a, end_b, start
+    return out
+
+
+def _halves(run: Run, made: Elements, held: Holds) -> list[tuple[tuple[int, ...], tuple[int, ...], Indices]]:
+    """Components, directions of turning and holds of each independent part of the problem."""
+    everything = np.arange(held.line.shape[1])
+    for normal in range(3) if run.bends else ():
+        if run.corners[normal, :, made.rows].any():
+            continue
+        off = held.unit[normal] != 0.0
+        inside = ~off.any(axis=1)
+        square = ~np.delete(held.unit, normal, axis=0).any(axis=(0, 2))
+        if (inside | square).all():
+            plane = (*(i for i in range(3) if i != normal), 3 + normal)
+            rest = (normal, *(3 + i for i in range(3) if i != normal))
+            return [(plane, (2,), np.flatnonzero(inside)), (rest, (0, 1), np.flatnonzero(~inside))]
+    return [(tuple(range(6)), (0, 1, 2), everything)]
+
+
+class _Half:
+    """The sweep over some components of twist and wrench."""
+
+    def __init__(self, run: Run, made: Elements, held: Holds, parts: tuple[int, ...], which: Indices) -> None:
+        self.run, self.which, self.parts = run, which, parts
+        self.softness, self.support = held.softness[which], held.support[which]
+        pick = list(parts)
+        self.lines = held.line[pick][:, which]
+        self.tip = end_lines(made.end)[pick][:, pick]
+        self.stiff_a, self.stiff_b = _stiffness(run, 0, made.rows)[pick], _stiffness(run, 1, made.rows)[pick]
+        self.loose: list[int] = np.flatnonzero((self.stiff_a == 0).any(axis=1)).tolist()
+        with np.errstate(divide="ignore"):
+            self.soft_a, self.soft_b = 1.0 / self.stiff_a, 1.0 / self.stiff_b
+        if len(self.loose):
+            self.soft_a = np.where(self.stiff_a == 0, 1.0 / _prop(made)[pick], self.soft_a)
+        self.at_station: dict[int, list[int]] = {}
+        for hold, station in enumerate(held.station[which].tolist()):
+            self.at_station.setdefault(station, []).append(hold)
+        self.steps: list[_Step] = []
+
+    def solve(
+        self,
+        compliance: Array,
+        free: Array,
+        loads: Array | None,
+        jumps: Array | None,
+        moved_a: Array,
+        moved_b: Array,
+        target: Array | None,
+    ) -> tuple[Array, Array, Array, Array, Array]:
+        """Forces of this part; arguments and answers as of `sweep`, with its components only."""
+        count, p, n, rows = free.shape
+        loose, soft_a = self.loose, self.soft_a
+        self.c = np.zeros((p + len(loose), p + len(loose), rows))
+        self.t = np.zeros((count, p + len(loose), rows))
+        c, t = self.c, self.t
+        self.t[:, :p] = moved_a
+        c[range(p), range(p)] = soft_a
         for j, i in enumerate(loose):
-            c[6 + j, i] = c[i, 6 + j] = c[6 + j, 6 + j] = c[i, i]
-            t[:, 6 + j] = moved_a[:, i]
-        soft_a = c[range(6), range(6)].copy()
-        soft_b = 1.0 / _stiffness(run, 1, made.rows)
+            c[p + j, i] = c[i, p + j] = c[p + j, p + j] = soft_a[i]
+            t[:, p + j] = moved_a[:, i]
+        for e in range(n + 1):
+            if jumps is not None:
+                t += np.einsum("ijr,sjr->sir", c[:, :p], jumps[:, :, e])
+            if e in self.at_station:
+                self._holds(e, target)
+            if e < n:
+                if loads is not None:
+                    t += np.einsum("ijr,sjr->sir", c[:, :p], loads[:, :, e])
+                t[:, :p] += free[:, :, e]
+                c[:p, :p] += compliance[:, :, e]
+        for i in np.flatnonzero((self.stiff_b > 0).any(axis=1)).tolist():
+            self._step(n, _END_B - i, self.tip[:, i], self.soft_b[i], moved_b[:, i])
+        for j, i in enumerate(loose):
+            self._release(n, j, i, p)
+        return self._back(loads, jumps, moved_a, free)
 
-    steps: list[_Step] = []
-    order = np.argsort(held.station, kind="stable")
-    stations = held.station[order].tolist()
-    queue = list(zip(stations, order.tolist(), strict=True))
-    at = 0
+    def _step(self, station: int, hold: int, line: Array, soft: Array, target: Array | float) -> None:
+        y = np.einsum("ijr,jr->ir", self.c[:, : len(line)], line)
+        s = (line * y[: len(line)]).sum(axis=0) + soft
+        rest = (target - (line * self.t[:, : len(line)]).sum(axis=1)) / s
+        self.t += y * rest[:, None]
+        self.c -= y[:, None] * (y / s)
+        self.steps.append(_Step(station, hold, line, y, s, rest))
 
-    def step(
-        station: int, hold: int, line: Array, soft: Array, target: Array | float, arrival: Array | None
-    ) -> None:
-        y = np.einsum("ijr,jr->ir", c[:, : len(line)], line)
-        s = np.einsum("ir,ir->r", line, y[: len(line)]) + soft
-        if arrival is not None:
-            _refuse_double(run, held, hold, s, arrival)
-        rest = (target - np.einsum("ir,sir->sr", line, t[:, : len(line)])) / s
-        np.add(t, y * rest[:, None], out=t)
-        np.subtract(c, y[:, None] * (y / s), out=c)
-        steps.append(_Step(station, hold, line, y, s, rest))
+    def _holds(self, station: int, target: Array | None) -> None:
+        here = self.at_station[station]
+        p = len(self.lines)
+        lines = self.lines[:, here]
+        arrival = (lines * np.einsum("ijr,jhr->ihr", self.c[:p, :p], lines)).sum(axis=0)
+        for hold, reach in zip(here, arrival, strict=True):
+            aim = 0.0 if target is None else target[:, hold]
+            self._step(station, hold, self.lines[:, hold], self.softness[hold], aim)
+            bad = ~(self.steps[-1].s > _SAME * reach)
+            if bad.any():
+                tag = self.run.supports[self.support[hold]].tag or f"{self.support[hold]}"
+                allowed = "one rigid hold a place and direction"
+                fault = Fault(f"support {tag}", "a direction that is held here already", allowed)
+                refuse(UnstableLayoutError, (bad, fault))
 
-    for e in range(n + 1):
-        if jumps is not None:
-            t += np.einsum("ijr,sjr->sir", c[:, :6], jumps[:, :, e])
-        if at < len(queue) and queue[at][0] == e:
-            before = c[:6, :6].copy() if at + 1 < len(queue) and queue[at + 1][0] == e else c[:6, :6]
-            while at < len(queue) and queue[at][0] == e:
-                hold = queue[at][1]
-                line = held.line[:, hold]
-                arrival = np.einsum("ir,ijr,jr->r", line, before, line)
-                step(e, hold, line, held.softness[hold], 0.0 if target is None else target[:, hold], arrival)
-                at += 1
-        if e < n:
-            if loads is not None:
-                t += np.einsum("ijr,sjr->sir", c[:, :6], loads[:, :, e])
-            t[:, :6] += free[:, :, e]
-            c[:6, :6] += compliance[:, :, e]
-    tip = end_lines(made.end)
-    for i in range(6):
-        if np.isfinite(soft_b[i]).any():
-            step(n, -1 - i, tip[:, i], soft_b[i], moved_b[:, i], None)
-    for j, i in enumerate(loose):
-        line = np.zeros((size, rows))
-        line[6 + j] = 1.0
-        soft = np.where(_stiffness(run, 0, made.rows)[i] == 0, -soft_a[i], np.inf)
-        y = c[6 + j]
-        floats = np.isfinite(soft) & ~(np.abs(y[6 + j] + soft) > _FLOATS * soft_a[i])
-        refuse(
-            UnstableLayoutError,
-            (
-                floats,
-                Fault("ends", "the run floats", f"hold the run against axis {'xyzxyz'[i]} {_KIND[i // 3]}"),
-            ),
-        )
-        step(n, -7 - j, line, soft, 0.0, None)
-    return _back(made, held, steps, c.shape[0], loads, jumps, soft_a, loose, moved_a, free, tip)
+    def _release(self, station: int, j: int, i: int, p: int) -> None:
+        """Take the prop of a free axis of end A out again."""
+        line = np.zeros((len(self.c), self.c.shape[2]))
+        line[p + j] = 1.0
+        soft = np.where(self.stiff_a[i] == 0, -self.soft_a[i], np.inf)
+        floats = np.isfinite(soft) & ~(np.abs(self.c[p + j, p + j] + soft) > _FLOATS * self.soft_a[i])
+        axis = self.parts[i]
+        what = f"an end or support against {'movement along' if axis < 3 else 'rotation about'} {'xyz'[axis % 3]}"
+        refuse(UnstableLayoutError, (floats, Fault("ends", "the run floats", what)))
+        self._step(station, _END_A - j, line, soft, 0.0)
 
-
-_KIND = ("(movement)", "(rotation)")
+    def _back(
+        self, loads: Array | None, jumps: Array | None, moved_a: Array, free: Array
+    ) -> tuple[Array, Array, Array, Array, Array]:
+        """Back-substitution from end B to end A."""
+        count, p, n, rows = free.shape
+        w = np.zeros((count, len(self.c), rows))
+        wrench = np.empty((count, p, n, rows))
+        hold_force = np.empty((count, self.lines.shape[1], rows))
+        end_b = np.zeros((count, p, rows))
+        at = len(self.steps)
+        for e in range(n, -1, -1):
+            while at and self.steps[at - 1].station == e:
+                at -= 1
+                one = self.steps[at]
+                force = one.rest - (one.y * w).sum(axis=1) / one.s
+                w[:, : len(one.line)] += one.line * force[:, None]
+                if one.hold >= 0:
+                    hold_force[:, one.hold] = -force
+                elif one.hold > _END_A:
+                    end_b[:, _END_B - one.hold] = -force
+            if jumps is not None:
+                w[:, :p] += jumps[:, :, e]
+            if e:
+                wrench[:, :, e - 1] = w[:, :p]
+                if loads is not None:
+                    w[:, :p] += loads[:, :, e - 1]
+        end_a = w[:, :p].copy()
+        start = moved_a + self.soft_a * end_a
+        for j, i in enumerate(self.loose):
+            start[:, i] = moved_a[:, i] + self.soft_a[i] * (w[:, i] + w[:, p + j])
+            end_a[:, i] = np.where(self.stiff_a[i] == 0, 0.0, end_a[:, i])
+        return wrench, hold_force, end_a, end_b, start
 
 
 def _prop(made: Elements) -> Array:
@@ -268,61 +367,3 @@ def _prop(made: Elements) -> Array:
     length = made.shape.length.sum(axis=0)
     bending = made.prop.bending.mean(axis=0)
     return np.stack([3.0 * bending / length**3] * 3 + [bending / length] * 3)
-
-
-def _refuse_double(run: Run, held: Holds, hold: int, s: Array, arrival: Array) -> None:
-    bad = ~(s > _SAME * arrival)
-    if bad.any():
-        tag = run.supports[held.support[hold]].tag or f"{held.support[hold]}"
-        refuse(
-            UnstableLayoutError,
-            (
-                bad,
-                Fault(
-                    f"support {tag}", "a direction already held here", "one rigid hold a place and direction"
-                ),
-            ),
-        )
-
-
-def _back(
-    made: Elements,
-    held: Holds,
-    steps: list[_Step],
-    size: int,
-    loads: Array | None,
-    jumps: Array | None,
-    soft_a: Array,
-    loose: Array,
-    moved_a: Array,
-    free: Array,
-    tip: Array,
-) -> tuple[Array, Array, Array, Array, Array]:
-    """Back-substitution from end B to end A."""
-    count, _, n, rows = free.shape
-    w = np.zeros((count, size, rows))
-    wrench = np.empty((count, 6, n, rows))
-    hold_force = np.empty((count, held.line.shape[1], rows))
-    end_b = np.zeros((count, 6, rows))
-    at = len(steps)
-    for e in range(n, -1, -1):
-        while at and steps[at - 1].station == e:
-            at -= 1
-            one = steps[at]
-            force = one.rest - np.einsum("ir,sir->sr", one.y, w) / one.s
-            w[:, : len(one.line)] += one.line * force[:, None]
-            if one.hold >= 0:
-                hold_force[:, one.hold] = -force
-            elif one.hold >= -6:
-                end_b[:, -1 - one.hold] = -force
-        if jumps is not None:
-            w[:, :6] += jumps[:, :, e]
-        if e:
-            wrench[:, :, e - 1] = w[:, :6]
-            if loads is not None:
-                w[:, :6] += loads[:, :, e - 1]
-    end_a = w[:, :6].copy()
-    start = moved_a + soft_a * end_a
-    for j, i in enumerate(loose):
-        start[:, i] = moved_a[:, i] + soft_a[i] * (w[:, i] + w[:, 6 + j])
-    return wrench, hold_force, end_a, end_b, start
