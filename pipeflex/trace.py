@@ -203,7 +203,7 @@ PLAIN: Final = Plain()
 
 def _one(value: Values) -> float:
     """The number of a column of one row."""
-    return float(value) if np.ndim(value) == 0 else float(np.asarray(value).item())
+    return float(value.item() if isinstance(value, np.ndarray) else value)
 
 
 class Trace(Plain):

@@ -42,7 +42,7 @@ def allowable(stress_tables: tuple[str, ...], heated_joint: bool) -> CurveOf:
 def members(pipe: Pipe) -> Iterator[tuple[Material, Any]]:
     """Each material of a column with the mask of its rows (a slice where there is only one)."""
     row = np.asarray(pipe.material_row)
-    if len(pipe.materials) == 1 or row.ndim == 0:
+    if len(pipe.materials) == 1 or row.size == 1:
         yield pipe.materials[int(row.flat[0])], slice(None)
         return
     for i, one in enumerate(pipe.materials):

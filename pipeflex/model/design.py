@@ -66,10 +66,9 @@ class Design(Record):
         rows = self.rows or 1
 
         def widen(value: Any) -> Any:
-            array = np.asarray(value)
-            if array.ndim:
-                return array
-            return array.reshape(1) if rows == 1 else np.broadcast_to(array, (rows,))
+            if isinstance(value, np.ndarray):
+                return value
+            return np.array([value]) if rows == 1 else np.broadcast_to(value, (rows,))
 
         return self.mapped(widen).with_raw(rows=rows)
 
