@@ -306,7 +306,7 @@ class Panel(anywidget.AnyWidget):
 
     _esm = _ASSETS / "panel.js"
     _css = _ASSETS / "panel.css"
-    tree = List().tag(sync=True)
+    tree: List[Any] = List().tag(sync=True)
     trouble = Unicode().tag(sync=True)
 
     def __init__(self, *parts: Part, problem: Callable[[Exception], Any] | None = None, **how: Any) -> None:

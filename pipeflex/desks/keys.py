@@ -24,7 +24,7 @@ class _Guard(anywidget.AnyWidget):
     label = traitlets.Unicode().tag(sync=True)
 
 
-class DeskBox(ipywidgets.VBox):
+class DeskBox(ipywidgets.VBox):  # type: ignore[misc]
     """A column of widgets within which the notebook's one-letter commands do not act.
 
     Parameters
@@ -46,9 +46,10 @@ class DeskBox(ipywidgets.VBox):
 
 
 def close_tree(widget: ipywidgets.Widget) -> None:
-    """Close a widget, those in it, and their layouts; nothing of them stays in kernel or page."""
+    """Close a widget, those in it, their layouts and styles; nothing of them stays in kernel or page."""
     for child in getattr(widget, "children", ()):
         close_tree(child)
-    if isinstance(widget, ipywidgets.DOMWidget):
-        widget.layout.close()
+    for trait in ("layout", "style"):
+        if widget.has_trait(trait):
+            getattr(widget, trait).close()
     widget.close()

@@ -53,7 +53,7 @@ class StaticCopy:
         """Show a new image; the first call makes the output, in the cell that runs."""
         bundle = {"text/html": folded_image(svg, alt, self.title), "text/plain": alt}
         if self._handle is None:
-            self._handle = DisplayHandle()
-            self._handle.display(bundle, raw=True)
+            self._handle = DisplayHandle()  # type: ignore[no-untyped-call]
+            self._handle.display(bundle, raw=True)  # type: ignore[no-untyped-call]
         else:
-            self._handle.update(bundle, raw=True)
+            self._handle.update(bundle, raw=True)  # type: ignore[no-untyped-call]

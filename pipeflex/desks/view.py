@@ -19,6 +19,8 @@ from typing import Any
 import anywidget
 import traitlets
 
+from pipeflex.desks.shield import shielded
+
 _ASSETS = Path(__file__).parent / "assets"
 
 COLOURS = MappingProxyType(
@@ -65,7 +67,7 @@ class PictureView(anywidget.AnyWidget):
 
     def __init__(self, **how: Any) -> None:
         super().__init__(_plotly=version("plotly"), **how)
-        self.on_msg(self._answer)
+        self.on_msg(shielded(self._answer, lambda error: self.send({"fault": str(error)})))
 
     @traitlets.default("colours")
     def _default_colours(self) -> dict[str, tuple[str, str]]:

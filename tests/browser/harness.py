@@ -253,9 +253,7 @@ class Lab:
             f"{self.server.base}/lab/tree/{self.name}?token={self.server.token}&reset",
             wait_until="domcontentloaded",
         )
-        self.page.wait_for_function(
-            "() => window.jupyterapp?.shell.currentWidget?.content?.widgets", timeout=90_000
-        )
+        self.page.wait_for_function("() => window.jupyterapp?.shell.currentWidget?.content?.widgets", timeout=90_000)
         self.page.evaluate(
             f"async () => {{ {NOTEBOOK_JS} await panel.context.ready; await panel.sessionContext.ready; }}"
         )
@@ -275,9 +273,7 @@ class Lab:
         """Run every cell, wait until the kernel and the widgets rest; the time taken [s]."""
         begun = time.monotonic()
         if restart:
-            self.page.evaluate(
-                f"async () => {{ {NOTEBOOK_JS} await panel.sessionContext.session.kernel.restart(); }}"
-            )
+            self.page.evaluate(f"async () => {{ {NOTEBOOK_JS} await panel.sessionContext.session.kernel.restart(); }}")
             self._await_idle(60)
         self.command("notebook:run-all-cells", seconds)
         self._await_idle(seconds)

@@ -71,9 +71,7 @@ def test_no_key_of_jupyterlab_acts_inside_a_desk(toy: Lab) -> None:
     assert len(toy.cells()) == 3
 
 
-def test_outside_a_desk_the_keys_act_so_the_guard_is_what_stops_them(
-    open_notebook: Opener, tmp_path: Path
-) -> None:
+def test_outside_a_desk_the_keys_act_so_the_guard_is_what_stops_them(open_notebook: Opener, tmp_path: Path) -> None:
     bare = 'from pipeflex.desks.entry import Button, Panel\ndisplay(Panel(Button("bare", print)))'
     lab = open_notebook(write_notebook(tmp_path / "bare.ipynb", bare, "'end'"))
     lab.commands()
@@ -214,7 +212,9 @@ def test_picture_describes_itself_follows_theme_and_width_and_reports_clicks(
     picture = lab.page.locator(".pf-picture [role=img]")
     assert picture.get_attribute("aria-label") == "A loop with a leg of 5.10 m."
     assert lab.page.locator(".modebar, .modebar-btn").count() == 0, "no button that posts to a cloud"
-    context = lab.page.evaluate(f"() => {{ const c = ({PLOT_JS})()._context; return [c.showSendToCloud, c.displaylogo]; }}")
+    context = lab.page.evaluate(
+        f"() => {{ const c = ({PLOT_JS})()._context; return [c.showSendToCloud, c.displaylogo]; }}"
+    )
     assert context == [False, False]
     assert lab.page.evaluate("() => window.Plotly === undefined"), "no global is left behind"
 
@@ -227,7 +227,7 @@ def test_picture_describes_itself_follows_theme_and_width_and_reports_clicks(
         "() => getComputedStyle(document.querySelector('.pf-picture .js-line')).stroke === 'rgb(227, 231, 236)'"
     )
 
-    lab.page.wait_for_timeout(1000)  # the theme's fonts change widths for a while
+    lab.settle()
     box = picture.bounding_box()
     assert box is not None
     # the plot fills the picture: x from -1 to 3, y from -1 to 7
@@ -238,7 +238,8 @@ def test_picture_describes_itself_follows_theme_and_width_and_reports_clicks(
 
     lab.page.set_viewport_size({"width": 900, "height": 800})
     lab.page.wait_for_function(
-        f"() => {{ const p = ({PLOT_JS})(); return p._fullLayout.width === Math.floor(p.clientWidth) && p.clientWidth < 500; }}"
+        f"() => {{ const p = ({PLOT_JS})(), width = Math.floor(p.clientWidth);"
+        " return width < 500 && p._fullLayout.width === width; }"
     )
     lab.type("Leg", "6")
     lab.expect(".pf-picture .annotation", "6.00 m")
@@ -281,9 +282,7 @@ IMAGES_JS = """() => [...document.querySelectorAll('.jp-OutputArea details img')
   .map(i => [i.alt, i.complete && i.naturalWidth, atob(i.src.split(',')[1]).match(/<title>(.*)<.title>/)[1]])"""
 
 
-def test_static_copy_follows_and_outlives_the_kernel(
-    toy: Lab, open_notebook: Opener, tmp_path: Path
-) -> None:
+def test_static_copy_follows_and_outlives_the_kernel(toy: Lab, open_notebook: Opener, tmp_path: Path) -> None:
     assert toy.page.evaluate(IMAGES_JS) == [["A loop with a leg of 5.10 m.", 60, "5.1"]]
     toy.type("Leg", "6.25")
     toy.page.wait_for_function(f"() => ({IMAGES_JS})()[0][2] === '6.25'")
@@ -294,9 +293,7 @@ def test_static_copy_follows_and_outlives_the_kernel(
     reader = open_notebook(other, run=False)
     reader.allowed = "Error displaying widget|widget|model"
     reader.page.wait_for_function(f"() => ({IMAGES_JS})().length === 1")
-    assert not reader.page.evaluate(
-        "() => window.jupyterapp.shell.currentWidget.content.widgets[1].model.trusted"
-    )
+    assert not reader.page.evaluate("() => window.jupyterapp.shell.currentWidget.content.widgets[1].model.trusted")
     assert reader.page.evaluate(IMAGES_JS) == [["A loop with a leg of 6.25 m.", 60, "6.25"]]
 
 

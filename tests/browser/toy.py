@@ -1,7 +1,7 @@
 """A small desk of invented content that holds every part once, as cells for a test's notebook."""
 
 # ruff: noqa: E501
-TOY = '''\
+TOY = """\
 import ipywidgets as widgets
 from pipeflex.desks.entry import (
     Band, Button, ChoiceField, EntryField, Fold, Heading, Headline, Note, Panel, Row)
@@ -106,10 +106,10 @@ desk = DeskBox([top, body, bar, ladder, slider], "Toy desk")
 copy = StaticCopy()
 display(desk)
 copy.show(svg(), picture.description)
-'''
+"""
 
 TOY_CELLS = ("1 + 1", TOY, "'end'")
 
-CLICKS_CELL = '''\
+CLICKS_CELL = """\
 picture.observe(lambda change: told("clicked {x:.1f} {y:.1f} {trace} {customdata}".format(**change["new"])), "clicked")
-'''
+"""

@@ -1,5 +1,7 @@
 // A picture: plotly draws a whole scene at every change, and never a mixture of two.
-const CONFIG = {displayModeBar: false, displaylogo: false, showSendToCloud: false, responsive: false};
+const CONFIG = {
+  displayModeBar: false, displaylogo: false, showSendToCloud: false, responsive: false, doubleClick: "reset",
+};
 const FONT = '-apple-system, "Segoe UI", "Liberation Sans", Arial, sans-serif';
 
 // One plotly.js a page and version, whatever the number of pictures and of runs of their cell.
@@ -18,9 +20,9 @@ async function load(code) {
 function ask(model, version, signal) {
   return new Promise((resolve, reject) => {
     const heard = (content, [code]) => {
-      if (content.plotly !== version) return;
       model.off("msg:custom", heard);
-      load(code).then(loaded => { page.loaded[version] = loaded; }).then(resolve, reject);
+      if (content.fault) reject(new Error(content.fault));
+      else load(code).then(loaded => { page.loaded[version] = loaded; }).then(resolve, reject);
     };
     signal.addEventListener("abort", resolve);      // gone before the answer: the next picture asks
     model.on("msg:custom", heard);
@@ -79,8 +81,15 @@ async function render({model, el}) {
     if (!Plotly || !width) return;                  // out of sight: drawn when it comes to light
     const scene = model.get("scene"), roles = model.get("colours"), first = !picture.data;
     const layout = layoutOf(scene, width, model.get("height"));
-    Plotly.react(picture, painted(scene.data ?? [], roles), painted(layout, roles), CONFIG);
-    if (first) picture.on("plotly_click", clicked);
+    new Promise(resolve => {
+      resolve(Plotly.react(picture, painted(scene.data ?? [], roles), painted(layout, roles), CONFIG));
+      if (first) picture.on("plotly_click", clicked);
+    }).catch(failed);
+  };
+  const failed = error => {
+    mark.textContent = `cannot be drawn: ${error.message}`;
+    mark.hidden = false;
+    throw error;
   };
   const clicked = ({points: [on] = [], event}) => {
     // plotly reports where the pointer last rested; a quick hand clicks elsewhere
@@ -110,7 +119,11 @@ async function render({model, el}) {
   themed.observe(document.body, {attributeFilter: ["data-jp-theme-light"]});
   describe();
   size();
-  plotly(model, gone.signal).then(loaded => { if (!gone.signal.aborted) { Plotly = loaded; draw(); } });
+  plotly(model, gone.signal).then(loaded => {
+    if (gone.signal.aborted) return;
+    Plotly = loaded;
+    draw();
+  }).catch(failed);
 
   return () => {
     gone.abort();
