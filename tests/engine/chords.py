@@ -108,7 +108,10 @@ def chord_model(case: dict, chords: int) -> Frame:
     last = len(frame.nodes) - 1
     frame.marks.append(last)
     frame.marks += [supports[name] for name in sorted(supports)]
-    for node, stiffness, moved in ((0, case["end_a"], case["moved_a"]), (last, case["end_b"], case["moved_b"])):
+    for node, stiffness, moved in (
+        (0, case["end_a"], case["moved_a"]),
+        (last, case["end_b"], case["moved_b"]),
+    ):
         for axis in range(6):
             if np.isinf(stiffness[axis]):
                 frame.fixed[node, axis] = moved[axis]
@@ -117,7 +120,9 @@ def chord_model(case: dict, chords: int) -> Frame:
     return frame
 
 
-def _answers(frame: Frame, moved: np.ndarray, on_nodes: np.ndarray, moments: np.ndarray) -> dict[str, np.ndarray]:
+def _answers(
+    frame: Frame, moved: np.ndarray, on_nodes: np.ndarray, moments: np.ndarray
+) -> dict[str, np.ndarray]:
     """What is compared: forces and moments on ends and supports, moments and movements at the marks."""
     reaction = np.zeros_like(moved)
     for (node, axis), _ in frame.fixed.items():

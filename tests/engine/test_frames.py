@@ -24,13 +24,29 @@ from pipeflex.mechanics.beam import (
 
 from .chords import by_calfem, by_pynite, extrapolated
 
-PIPES = [(0.0334, 0.0034), (0.0603, 0.0039), (0.1143, 0.006), (0.2191, 0.0082), (0.4064, 0.0095), (0.9144, 0.0127)]
+PIPES = [
+    (0.0334, 0.0034),
+    (0.0603, 0.0039),
+    (0.1143, 0.006),
+    (0.2191, 0.0082),
+    (0.4064, 0.0095),
+    (0.9144, 0.0127),
+]
 MODULI = {"carbon steel": 203e9, "stainless steel": 195e9, "copper": 117e9, "aluminium": 69e9}
 SHAPES = {
     "L": [(0, 0, 0), (9, 0, 0), (9, 5, 0)],
     "Z": [(0, 0, 0), (8, 0, 0), (8, 4, 0), (14, 4, 0)],
     "U": [(0, 0, 0), (10, 0, 0), (10, 4, 0), (13, 4, 0), (13, 0, 0), (22, 0, 0)],
-    "raised U": [(0, 0, 0), (10, 0, 0), (10, 0, 3), (10, 3, 3), (13, 3, 3), (13, 0, 3), (13, 0, 0), (20, 0, 0)],
+    "raised U": [
+        (0, 0, 0),
+        (10, 0, 0),
+        (10, 0, 3),
+        (10, 3, 3),
+        (13, 3, 3),
+        (13, 0, 3),
+        (13, 0, 0),
+        (20, 0, 0),
+    ],
     "riser": [(0, 0, 0), (4, 0, 0), (4, 0, 9), (4, 5, 9)],
     "space Z": [(0, 0, 0), (7, 0, 0), (7, 5, 0), (7, 5, 6), (2, 5, 6)],
     "skew": [(0, 0, 0), (9, 0, 0), (14, 4, 1), (14, 12, 1), (21, 15, -2)],
@@ -104,7 +120,9 @@ def by_engine(case: dict) -> tuple[dict[str, np.ndarray], np.ndarray]:
     def column(name):
         return np.array([[piece[name]] for piece in pieces])
 
-    placed = {kind: [t for t in case["placed"] if t["kind"] == kind] for kind in ("support", "weight", "break")}
+    placed = {
+        kind: [t for t in case["placed"] if t["kind"] == kind] for kind in ("support", "weight", "break")
+    }
     supports = [
         Support(
             leg=t["leg"],
@@ -122,7 +140,9 @@ def by_engine(case: dict) -> tuple[dict[str, np.ndarray], np.ndarray]:
         bend_factor=factor,
         weight=column("weight"),
         supports=supports,
-        weights=[PointWeight(leg=t["leg"], distance=t["distance"], force=t["force"]) for t in placed["weight"]],
+        weights=[
+            PointWeight(leg=t["leg"], distance=t["distance"], force=t["force"]) for t in placed["weight"]
+        ],
         breaks=[Break(leg=t["leg"], distance=t["distance"]) for t in placed["break"]],
         ends=(End(stiffness=case["end_a"]), End(stiffness=case["end_b"])),
     )

@@ -25,6 +25,7 @@ _MULTIPLIER = 50
 _SOFT = 1e-4
 _EXACT = 1e-10
 _ROUNDING = 1e-13
+_GOOD = 1e-7
 _STALLED = 1e-14
 
 
@@ -82,7 +83,8 @@ def balance(
         if change <= accuracy:
             break
     left = max(left, change)
-    return Balance(u, force, left, total, left <= 10.0 * accuracy)
+    enough = 10.0 * accuracy + _GOOD * float(np.abs(force).max())
+    return Balance(u, force, left, total, left <= enough)
 
 
 class _Inner:

@@ -170,7 +170,7 @@ def _unit_length(run: Run, unit: Array, support: Indices) -> None:
                 (
                     ~(size[j] > 0.0),
                     Fault(
-                        f"support {run.supports[support[j]].tag or support[j]}",
+                        f"support {run.supports[support[j]].tag or support[j] + 1}",
                         "a direction without length",
                         "on a vertical leg nothing is lateral: give a vector; else a vector that is not zero",
                     ),

@@ -136,11 +136,10 @@ def settle(run: Run, states: States, steps: int = 8) -> Settled:
 def _pressing(model: _Model, plain: Array, force: Array) -> Array:
     """What presses on each support: its plain holds and its contacts [N]."""
     size = len(model.friction)
-    own = np.bincount(model.held.support[: len(plain)], np.abs(plain), minlength=size)
-    total: Array = own + np.bincount(
-        model.support, np.where(model.hold >= 0, np.abs(force), 0.0), minlength=size
-    )
-    return total
+    pressing = np.zeros(size)
+    pressing += np.bincount(model.held.support[: len(plain)], np.abs(plain), minlength=size)
+    pressing += np.bincount(model.support, np.where(model.hold >= 0, np.abs(force), 0.0), minlength=size)
+    return pressing
 
 
 def _step(

@@ -8,6 +8,7 @@ from dataclasses import dataclass, field
 from itertools import pairwise
 
 import numpy as np
+from numpy.typing import NDArray
 
 from pipeflex.errors import Fault, InputError, refuse
 from pipeflex.mechanics.beam.compliance import Array, Indices, cross, dot
@@ -222,7 +223,10 @@ def geometry(corners: Array, radius: Array) -> tuple[Array, Array, Array, Array,
     if short.any():
         refuse(
             InputError,
-            *((short[i], Fault(f"leg {i}", 0.0, "longer than zero", "length")) for i in range(len(lengths))),
+            *(
+                (short[i], Fault(f"leg {i + 1}", 0.0, "longer than zero", "length"))
+                for i in range(len(lengths))
+            ),
         )
     along = legs / lengths
     before, after = along[:, :-1], along[:, 1:]
@@ -282,7 +286,7 @@ def _plan(
             on_leg[thing.leg].append(i)
         elif thing.bend is not None:
             on_bend[thing.bend].append(i)
-    curved = (radius > 0).any(axis=1)
+    curved: NDArray[np.bool_] = np.asarray((radius > 0).any(axis=1))
     table: list[tuple[int, int, int, int, int, float, float]] = []
     station = [0] * len(placed)
     piece = 0
@@ -348,7 +352,7 @@ def _check_on_straight(
                     Fault(
                         f"{_name(placed[i])}.distance",
                         distances[i],
-                        f"on the straight part of leg {legs[i]}",
+                        f"on the straight part of leg {legs[i] + 1}",
                         "length",
                         low=float(start[legs[i]][wrong[i]][0]),
                         high=float(end[legs[i]][wrong[i]][0]),

@@ -31,6 +31,7 @@ from pipeflex.mechanics.beam.run import Run
 
 _SAME = 1e-12
 _FLOATS = 1e-11
+_TOUCHING = 1e-9
 _END_B, _END_A = -1, -7
 
 Work = dict[tuple[int, ...], Array]
@@ -208,9 +209,9 @@ def sweep(
         load, jump = (None if a is None else a[:, pick] for a in (loads, jumps))
         pushed = None if target is None else target[:, which]
         causes = (strain, load, jump, at_a, at_b, pushed)
-        if len(parts) < 6 and not any(a is not None and a.any() for a in causes):
-            continue
         part = _Half(run, made, held, parts, which)
+        if len(parts) < 6 and not part.loose and not any(a is not None and a.any() for a in causes):
+            continue
         key = (len(parts), n, rows)
         if key not in work:
             work[key] = np.empty((2, len(parts), len(parts), n, rows))
@@ -252,9 +253,13 @@ class _Half:
             self.soft_a, self.soft_b = 1.0 / self.stiff_a, 1.0 / self.stiff_b
         if len(self.loose):
             self.soft_a = np.where(self.stiff_a == 0, 1.0 / _prop(made)[pick], self.soft_a)
+        self.before = np.zeros((len(parts), len(parts), made.end.shape[1]))
         self.at_station: dict[int, list[int]] = {}
         for hold, station in enumerate(held.station[which].tolist()):
             self.at_station.setdefault(station, []).append(hold)
+        length = made.shape.length
+        near = (length <= _TOUCHING * length.sum(axis=0)).any(axis=1)
+        self.same_place = set((np.flatnonzero(near) + 1).tolist())
         self.steps: list[_Step] = []
 
     def solve(
@@ -294,28 +299,38 @@ class _Half:
             self._release(n, j, i, p)
         return self._back(loads, jumps, moved_a, free)
 
-    def _step(self, station: int, hold: int, line: Array, soft: Array, target: Array | float) -> None:
+    def _step(
+        self,
+        station: int,
+        hold: int,
+        line: Array,
+        soft: Array,
+        target: Array | float,
+        reach: Array | None = None,
+    ) -> None:
         y = np.einsum("ijr,jr->ir", self.c[:, : len(line)], line)
         s = (line * y[: len(line)]).sum(axis=0) + soft
+        if reach is not None and not (s > _SAME * reach).all():
+            support = self.support[hold]
+            tag = self.run.supports[support].tag or f"{support + 1}"
+            fault = Fault(f"support {tag}", "held here already", "one rigid hold a place and direction")
+            refuse(UnstableLayoutError, (~(s > _SAME * reach), fault))
         rest = (target - (line * self.t[:, : len(line)]).sum(axis=1)) / s
         self.t += y * rest[:, None]
         self.c -= y[:, None] * (y / s)
         self.steps.append(_Step(station, hold, line, y, s, rest))
 
     def _holds(self, station: int, target: Array | None) -> None:
+        """The holds of one station; `before` is the compliance at which the pipe came to this place."""
         here = self.at_station[station]
         p = len(self.lines)
+        if station not in self.same_place:
+            self.before = self.c[:p, :p].copy()
         lines = self.lines[:, here]
-        arrival = (lines * np.einsum("ijr,jhr->ihr", self.c[:p, :p], lines)).sum(axis=0)
-        for hold, reach in zip(here, arrival, strict=True):
+        reach = (lines * np.einsum("ijr,jhr->ihr", self.before, lines)).sum(axis=0)
+        for n, hold in enumerate(here):
             aim = 0.0 if target is None else target[:, hold]
-            self._step(station, hold, self.lines[:, hold], self.softness[hold], aim)
-            bad = ~(self.steps[-1].s > _SAME * reach)
-            if bad.any():
-                tag = self.run.supports[self.support[hold]].tag or f"{self.support[hold]}"
-                allowed = "one rigid hold a place and direction"
-                fault = Fault(f"support {tag}", "a direction that is held here already", allowed)
-                refuse(UnstableLayoutError, (bad, fault))
+            self._step(station, hold, self.lines[:, hold], self.softness[hold], aim, reach[n])
 
     def _release(self, station: int, j: int, i: int, p: int) -> None:
         """Take the prop of a free axis of end A out again."""
