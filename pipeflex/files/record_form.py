@@ -11,11 +11,11 @@ import re
 from collections.abc import Callable, Collection, Iterator, Mapping
 from contextlib import contextmanager
 from dataclasses import MISSING, dataclass, fields, replace
+from decimal import Decimal
 from difflib import get_close_matches
 from typing import Any, Final, TypeVar
 
 from pipeflex.errors import Fault, InputError, MissingInput, PipeflexError, UnitError, refuse_all
-from pipeflex.files.toml_text import Plain
 from pipeflex.model.fields import Flag, Names, Number, Numbers, Pick, Sub, Text, Vector, Whole
 from pipeflex.model.record import Record
 from pipeflex.notation import ascii_unit
@@ -26,6 +26,7 @@ from pipeflex.units import spelled
 R = TypeVar("R", bound=Record)
 Table = dict[str, Any]
 
+_WHOLE = re.compile(r"-?\d+", re.ASCII)
 _NUMBER = re.compile(r"-?(0|[1-9]\d*)(\.\d+)?(e[+-]?\d+)?")
 _BARE: Final = ("ratio", "count")
 """Kinds whose numbers need no unit."""
@@ -93,10 +94,12 @@ def table(record: Record, forms: Forms) -> Table:
     return form.fold(record, made) if form else made
 
 
-def entry(value: float, kind: str) -> str:
+def entry(value: float, kind: str) -> str | int | Decimal:
     """A number as it stands in a file: bare where the kind allows it, elsewhere as text with its unit."""
     text = spelled(value, kind)
-    return Plain(text) if kind in _BARE and _NUMBER.fullmatch(text) else text
+    if kind not in _BARE or not _NUMBER.fullmatch(text):
+        return text
+    return int(text) if _WHOLE.fullmatch(text) else Decimal(text)
 
 
 def _entry(value: Any, spec: Any, forms: Forms) -> Any:

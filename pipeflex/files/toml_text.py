@@ -1,73 +1,22 @@
 """A document of tables, lists, texts and numbers as TOML, the same bytes each time; and back, with clear errors."""
 
-import json
 import re
 import tomllib
-from typing import Any, Final
+from typing import Any
+
+import tomli_w
 
 from pipeflex.errors import Fault, InputError
 
-_LINE: Final = 100
-_BARE_KEY = re.compile(r"[A-Za-z0-9_-]+")
 _PART = r"(?:[\w-]++|\"[^\"\n]*+\"|'[^'\n]*+')"
 _LONG_PATH = re.compile(rf"(?<![\w-]){_PART}(?:[ \t]*\.[ \t]*{_PART}){{30}}")
 """A dotted key that no design has; the time to read one grows with the square of its length."""
 _PLACE = re.compile(r" \(at (?:line (\d+), column (\d+)|end of document)\)$")
 
 
-class Plain(str):
-    """Text of a number as it is to stand in the file, without quotes."""
-
-    __slots__ = ()
-
-
 def toml(document: dict[str, Any]) -> str:
-    """The document as TOML: plain entries first, then the tables, in the order given."""
-    return "\n".join(_table(document, ())).lstrip("\n") + "\n"
-
-
-def _table(table: dict[str, Any], path: tuple[str, ...]) -> list[str]:
-    lines, tables = [], []
-    for key, value in table.items():
-        if isinstance(value, dict):
-            tables += _headed("[{}]", value, (*path, key))
-        elif isinstance(value, list) and value and isinstance(value[0], dict):
-            for member in value:
-                tables += _headed("[[{}]]", member, (*path, key))
-        else:
-            lines.append(f"{_key(key)} = {_value(value)}")
-    return lines + tables
-
-
-def _headed(head: str, table: dict[str, Any], path: tuple[str, ...]) -> list[str]:
-    lines = _table(table, path)
-    only_tables = bool(lines) and not lines[0]
-    return lines if only_tables else ["", head.format(".".join(map(_key, path))), *lines]
-
-
-def _key(key: str) -> str:
-    return key if _BARE_KEY.fullmatch(key) else _quoted(key)
-
-
-def _value(value: Any) -> str:
-    if isinstance(value, Plain):
-        return value
-    if isinstance(value, str):
-        return _quoted(value)
-    if isinstance(value, list):
-        members = [_value(v) for v in value]
-        line = f"[{', '.join(members)}]"
-        return line if len(line) <= _LINE else "[\n" + "".join(f"    {m},\n" for m in members) + "]"
-    return json.dumps(value)
-
-
-def _quoted(text: str) -> str:
-    if "\n" in text:
-        lines = (json.dumps(line, ensure_ascii=False)[1:-1] for line in text.split("\n"))
-        body = '"""\n' + "\n".join(lines) + '"""'
-    else:
-        body = json.dumps(text, ensure_ascii=False)
-    return body.replace("\x7f", "\\u007f")
+    """The document as TOML, in the order given; a `Decimal` stands as its text, without quotes."""
+    return tomli_w.dumps(document, multiline_strings=True)
 
 
 def document(text: str, origin: str = "") -> dict[str, Any]:

@@ -229,7 +229,7 @@ def _fold_duty(duty: Duty, made: Table) -> Table:
 
 def _range(low: float, high: float) -> str:
     """Two temperatures as one range, with one unit at the end where that says the same."""
-    first, last = entry(low, "temperature"), entry(high, "temperature")
+    first, last = str(entry(low, "temperature")), str(entry(high, "temperature"))
     if low == high:
         return first
     short = f"{first.partition(' ')[0]} .. {last}"

@@ -2,7 +2,7 @@
 
 import math
 from collections.abc import Callable, Iterator, Mapping
-from dataclasses import MISSING, dataclass, field
+from dataclasses import MISSING, dataclass, field, fields
 from enum import StrEnum
 from typing import Any, Final
 
@@ -287,12 +287,12 @@ def content(value: Any) -> Any:
     if isinstance(value, StrEnum):
         return str(value)
     if isinstance(value, (Choice, StepTable)):
-        return repr(value)
+        return (type(value).__name__, *(content(getattr(value, f.name)) for f in fields(value)))
     if callable(value) and hasattr(value, "__qualname__"):
         known = OF_FUNCTION.get(value)
         return f"{value.__module__}.{value.__qualname__}" + (f": {known.text}" if known else "")
     if isinstance(value, float):
-        return float(value)
+        return float(value) + 0.0  # a negative zero is a zero
     return value
 
 
@@ -365,7 +365,7 @@ def names(*, default: Any = (), label: str = "") -> Any:
 
 def numbers(kind: str, *, at_least: float | None = None, at_most: float | None = None, label: str = "") -> Any:
     """Declare a field that holds named numbers."""
-    return _field(Numbers(kind, Limits(at_least=at_least, at_most=at_most), label), MISSING)
+    return _field(Numbers(kind, Limits(at_least=at_least, at_most=at_most), label), MISSING, FrozenMap)
 
 
 def vector(

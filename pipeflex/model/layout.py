@@ -11,7 +11,8 @@ from typing import Any, Final
 import numpy as np
 
 from pipeflex.errors import Fault, InputError, MissingInput, refuse
-from pipeflex.model.fields import FrozenMap, many, number, numbers, pick_of, text, vector, whole
+from pipeflex.model.fields import FrozenMap, many, number, numbers, pick_of, sub, text, vector, whole
+from pipeflex.model.pipe import Pipe
 from pipeflex.model.record import Record, record
 
 CORNER_KINDS: Final = ("bend", "square", "closely spaced mitre", "widely spaced mitre", "socket welded",
@@ -100,7 +101,7 @@ class Segment(Record):
     start: float = number("length", at_least=0)
     end: float = number("length", above=0)
     temperature_offset: float = number("temperature change", default=0.0)
-    pipe: Any = None
+    pipe: Pipe | None = sub(lambda: Pipe, optional=True)
 
     def check(self) -> None:
         refuse(

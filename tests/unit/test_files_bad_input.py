@@ -25,6 +25,7 @@ def changed(text, old, new):
     return text.replace(old, new, 1)
 
 
+AXIS = "axis = [\n    1,\n    0,\n    0,\n]"
 SUPPORT = '[[layout.supports]]\nkind = "{}"\nleg = {}\ndistance = "{}"\n\n[limits]'
 CONFIRMED = (
     '[[confirmed]]\ntable = "modulus/asme_tm1_metric"\nrow = "carbon"\ntemperature = "{}"\nkind = "{}"\n'
@@ -63,8 +64,8 @@ ONE_FAULT = {
     "out of range": ("friction = 0.3", "friction = -0.3", "layout.friction", "0.000 .. 1.000"),
     "true": ("friction = 0.3", "friction = true", "layout.friction", "a ratio as a plain number"),
     "great whole number": ("friction = 0.3", "friction = 1" + "0" * 400, "layout.friction", "a ratio"),
-    "two numbers of three": ("axis = [1, 0, 0]", "axis = [1, 0]", "layout.ends.0.axis", "a list of 3 numbers"),
-    "a text among numbers": ("axis = [1, 0, 0]", 'axis = [1, "x", 0]', "layout.ends.0.axis.2", "a ratio"),
+    "two numbers of three": (AXIS, "axis = [1, 0]", "layout.ends.0.axis", "a list of 3 numbers"),
+    "a text among numbers": (AXIS, 'axis = [1, "x", 0]', "layout.ends.0.axis.2", "a ratio"),
     "a word of few": ('pockets = "yes"', 'pockets = "maybe"', "layout.pockets", "yes, no, drained"),
     "a shape": ('shape = "U"', 'shape = "W"', "layout.shape", "raised U"),
     "a missing size": ('leg = "6 m"\n', "", "layout.sizes.leg", "a length"),
