@@ -49,11 +49,14 @@ class Expression:
         return f'<span class="math" role="math" aria-label="{escape(self.text)}">{self.html}</span>'
 
     @staticmethod
+    def plain(text: str) -> "Expression":
+        """Words as an expression."""
+        return Expression(text, escape(text))
+
+    @staticmethod
     def joined(separator: str, parts: "Iterable[Expression]") -> "Expression":
         parts = tuple(parts)
-        return Expression(
-            separator.join(p.text for p in parts), escape(separator).join(p.html for p in parts)
-        )
+        return Expression(separator.join(p.text for p in parts), escape(separator).join(p.html for p in parts))
 
 
 @dataclass(frozen=True, slots=True)
@@ -101,7 +104,7 @@ def _number(value: float, kind: str, units: UnitSystem, decimals: int | None = N
     return _Piece.both(body, escape(body), level)
 
 
-class _Printer(ast.NodeVisitor):
+class _Printer:
     """Prints a tree; `leaf` says what stands for a name, `times` and `over` what stands between factors."""
 
     def __init__(self, source: str, leaf: Leaf, *, numbers: bool) -> None:
@@ -109,7 +112,12 @@ class _Printer(ast.NodeVisitor):
         self.times, self.over = (" × ", " / ") if numbers else ("·", "/")
         self.inline = False
 
-    def generic_visit(self, node: ast.AST) -> _Piece:
+    def visit(self, node: ast.expr) -> _Piece:
+        """The piece of a node, by its kind."""
+        visitor: Callable[[ast.expr], _Piece] = getattr(self, f"visit_{type(node).__name__}", self._unknown)
+        return visitor(node)
+
+    def _unknown(self, node: ast.expr) -> _Piece:
         raise TypeError(f"no printed form for {ast.unparse(node)!r}")
 
     def visit_Name(self, node: ast.Name) -> _Piece:
@@ -145,7 +153,7 @@ class _Printer(ast.NodeVisitor):
             if self.inline:
                 return line
             return _Piece(line.text, _fraction(left.html, right.html), _PRODUCT, _UNITED)
-        return self.generic_visit(node)
+        return self._unknown(node)
 
     @staticmethod
     def _between(left: _Piece, sign: str, right: _Piece, level: int) -> _Piece:
@@ -201,8 +209,7 @@ def glyph(symbol: str) -> Expression:
 
 def quantity(value: float, symbol: str, units: UnitSystem = "metric") -> Expression:
     """The number of a symbol with its unit."""
-    body = present.text(value, SYMBOLS[symbol].kind, units)
-    return Expression(body, escape(body))
+    return Expression.plain(present.text(value, SYMBOLS[symbol].kind, units))
 
 
 def symbolic(formula: Formula, shown: Mapping[str, str] | None = None) -> Expression:
@@ -216,23 +223,23 @@ def symbolic(formula: Formula, shown: Mapping[str, str] | None = None) -> Expres
     )
 
 
-def substituted(
-    formula: Formula, args: Iterable[tuple[str, str, float]], units: UnitSystem = "metric"
-) -> Expression:
+def substituted(formula: Formula, args: Iterable[tuple[str, str, float]], units: UnitSystem = "metric") -> Expression:
     """The right side of a formula with every number and its unit; `args`: parameter, symbol shown, SI number."""
     pieces = {name: _number(value, SYMBOLS[symbol].kind, units) for name, symbol, value in args}
     return _printed(formula.tree, formula.text, pieces.__getitem__, numbers=True)
 
 
 def written(equation: str) -> Expression:
-    """An equation in letters of its own ("X = solve(C, X_d)"), each side printed; words stay as they are."""
-    sides = [side.strip() for side in equation.split("=")]
+    """An equation in letters of its own ("X = solve(C, X_d)"), each side printed; a side in words stays as it is."""
+    return Expression.joined(" = ", (_side(side.strip()) for side in equation.split("=")))
+
+
+def _side(text: str) -> Expression:
     try:
-        trees = [ast.parse(side, mode="eval").body for side in sides]
+        tree = ast.parse(text, mode="eval").body
     except SyntaxError:
-        return Expression(equation, escape(equation))
-    printed = (_printed(t, s, _letters, numbers=False) for t, s in zip(trees, sides, strict=True))
-    return Expression.joined(" = ", printed)
+        return Expression.plain(text)
+    return _printed(tree, text, _letters, numbers=False)
 
 
 def condition(asked: Condition, units: UnitSystem = "metric") -> tuple[Expression, Expression]:
@@ -251,7 +258,8 @@ def condition(asked: Condition, units: UnitSystem = "metric") -> tuple[Expressio
     in_symbols = _printed(tree, choice.condition, lambda name: _letters(SYMBOLS[name].glyph), numbers=False)
     values = dict(asked.args)
     kinds = {v: SYMBOLS[name].kind for name, v in asked.args}
-    kinds |= {n.value: "ratio" for n in ast.walk(tree) if isinstance(n, ast.Constant) and n.value not in kinds}
+    constants = [n.value for n in ast.walk(tree) if isinstance(n, ast.Constant)]
+    kinds |= {v: "ratio" for v in constants if isinstance(v, (int, float)) and v not in kinds}
 
     def number(name: str) -> _Piece:
         kind, decimals = SYMBOLS[name].kind, None

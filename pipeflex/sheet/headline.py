@@ -11,6 +11,7 @@ from pipeflex.model.words import Origin, Standing, Verdict
 from pipeflex.present import UnitSystem
 
 _TURNS_NAMED = 2
+_SHORT = {"guided_cantilever": "rule", "beam_flexibility": "beam"}
 _NOUNS = {
     "straight": "straight run",
     "L": "change of direction",
@@ -92,10 +93,8 @@ def _reason(outcome: Outcome, units: UnitSystem) -> str:
     return f"{outcome.leading.title}: {outcome.leading.reason or 'nothing is judged'}."
 
 
-def _by_which(
-    outcome: Outcome, units: UnitSystem, ladder: Ladder | None, turns: Sequence[Turn]
-) -> list[str]:
-    words = [f"By the {outcome.method_title}."]
+def _by_which(outcome: Outcome, units: UnitSystem, ladder: Ladder | None, turns: Sequence[Turn]) -> list[str]:
+    words = [f"By the {_SHORT.get(outcome.method, outcome.method_title)}."]
     if ladder is not None:
         words += _other_methods(outcome, units, ladder)
     turning = [t for t in turns if math.isfinite(float(t.turns))][:_TURNS_NAMED]
@@ -111,11 +110,14 @@ def _other_methods(outcome: Outcome, units: UnitSystem, ladder: Ladder) -> list[
     for rung in ladder.rungs:
         if rung.key == outcome.method or rung.reference:
             continue
+        said = []
         if math.isfinite(float(rung.leg)):
-            words.append(f"The {rung.title} would ask a leg of {present.text(float(rung.leg), 'length', units)}.")
+            said.append(f"would ask a leg of {present.text(float(rung.leg), 'length', units)}")
         other = float(rung.ratio)
         if rung.standing is Standing.INSIDE and math.isfinite(other) and (other > 1) != (ratio > 1):
-            words.append(f"The {rung.title} says {present.percent(other)}.")
+            said.append(f"says {present.percent(other)}")
+        if said:
+            words.append(f"The {_SHORT.get(rung.key, rung.title)} {' and '.join(said)}.")
     return words
 
 

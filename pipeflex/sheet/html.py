@@ -52,9 +52,7 @@ def _css(name: str) -> Markup:
 
 def page(view: Any) -> str:
     """The offline page of a view of a sheet."""
-    return _environment().get_template("page.html.j2").render(
-        s=view, css=_css("sheet.css"), page_css=_css("page.css")
-    )
+    return _environment().get_template("page.html.j2").render(s=view, css=_css("sheet.css"), page_css=_css("page.css"))
 
 
 def fragment(view: Any) -> str:

@@ -174,9 +174,9 @@ def _case(design: Design, i: int, units: UnitSystem) -> Entry:
         words.append(_value(spec, case.pressure, units))
     for name, spec in case.specs():
         value = getattr(case, name)
-        if name not in ("temperature", "pressure") and isinstance(spec, (Number, Vector)):
-            if value is not None and value != case.default(name):
-                words.append(f"{name.replace('_', ' ')} {_value(spec, value, units)}")
+        counted = isinstance(spec, (Number, Vector)) and name not in ("temperature", "pressure")
+        if counted and value is not None and value != case.default(name):
+            words.append(f"{name.replace('_', ' ')} {_value(spec, value, units)}")
     touched = f"duty.cases.{case.name}.temperature" not in design.demo
     origin = str(Origin.GIVEN if touched else Origin.DEMO)
     return Entry("Duty", f"Case {case.name}", ", ".join(words), f"{origin}; {case.reason}" if case.reason else origin)

@@ -138,7 +138,7 @@ def _tabled(step: Tabled, units: UnitSystem) -> Line:
         formula=expression.symbolic(step.formula),
         source=step.formula.ref,
         grid=Grid(
-            (Expression(step.over, expression.escape(step.over)), *(expression.glyph(s) for s, _ in step.columns)),
+            (Expression.plain(step.over), *(expression.glyph(s) for s, _ in step.columns)),
             tuple(zip(step.names, *columns, strict=True)),
             step.governs,
         ),
@@ -155,10 +155,7 @@ def _matrix(step: Matrix, units: UnitSystem) -> Line:
         formula=expression.written(step.equation),
         source=step.ref,
         grid=Grid(
-            tuple(Expression(h, expression.escape(h)) for h in ("", *step.heads)),
-            tuple(
-                (name, *(cell(v, k) for v, k in zip(values, step.kinds, strict=True)))
-                for name, values in step.rows
-            ),
+            tuple(Expression.plain(h) for h in ("", *step.heads)),
+            tuple((name, *(cell(v, k) for v, k in zip(values, step.kinds, strict=True))) for name, values in step.rows),
         ),
     )

@@ -11,6 +11,9 @@ from pipeflex.model.outcome import Check, Ladder, Load, Outcome, Turn
 from pipeflex.model.words import Judgement
 from pipeflex.present import UNIT_SYSTEMS, UnitSystem
 
+_NOTHING = "\u2013"
+
+
 @dataclass(frozen=True, slots=True)
 class CheckRow:
     """One check: demand and limit with their unit, ratio, state word, reason or note, place and states."""
@@ -45,7 +48,7 @@ def _check(check: Check, units: UnitSystem) -> CheckRow:
 
 @dataclass(frozen=True, slots=True)
 class LoadRow:
-    """One load in one state: direction in words, and thermal part, friction and sum in each unit system.
+    """One load in one state: direction in words, and thermal part, friction, weight and sum in each unit system.
 
     The parts are counted along the direction of the sum.
     """
@@ -53,7 +56,7 @@ class LoadRow:
     point: str
     direction: str
     state: str
-    parts: tuple[tuple[str, str, str], ...]
+    parts: tuple[tuple[str, ...], ...]
     greatest: bool
 
 
@@ -64,15 +67,13 @@ def loads(outcome: Outcome) -> tuple[LoadRow, ...]:
 
 def _load(load: Load) -> list[LoadRow]:
     worst = int(load.worst)
-    thermal, friction = np.atleast_1d(load.thermal), np.atleast_1d(load.friction)
+    columns = np.stack([np.atleast_1d(v) for v in (load.thermal, load.friction, load.weight, load.total)], axis=1)
     rows = []
-    for i, state in enumerate(load.states):
-        total = float(thermal[i] + friction[i])
-        way = -1.0 if total < 0 else 1.0
-        numbers = (way * float(thermal[i]), way * float(friction[i]), abs(total))
-        parts = tuple(tuple(present.text(v, load.kind, u) for v in numbers) for u in UNIT_SYSTEMS)
-        direction = f"{load.name}, {load.toward(total)}"
-        rows.append(LoadRow(load.point, direction, state, parts, i == worst))  # type: ignore[arg-type]
+    for i, (state, numbers) in enumerate(zip(load.states, columns, strict=True)):
+        total = float(numbers[-1])
+        signed = numbers * (-1.0 if total < 0 else 1.0)
+        parts = tuple(tuple(present.text(float(v), load.kind, u) for v in signed) for u in UNIT_SYSTEMS)
+        rows.append(LoadRow(load.point, f"{load.name}, {load.toward(total)}", state, parts, i == worst))
     return rows
 
 
@@ -81,7 +82,7 @@ def load_terms(outcome: Outcome, units: UnitSystem = "metric") -> str:
     friction = present.number(float(outcome.design.layout.friction), "ratio", units, 2)
     return (
         "Working loads, unfactored, of the pipe on the steel (or equipment). "
-        f"Friction factor {friction}; thermal part and friction apart, in each state of the line."
+        f"Friction factor {friction}; thermal part, friction and weight apart, in each state of the line."
     )
 
 
@@ -115,6 +116,7 @@ class RungRow:
     standing: str
     ratio: str
     leg: str
+    at_leg: str
     anchor: str
     remark: str
     chosen: bool
@@ -125,14 +127,18 @@ def rungs(ladder: Ladder, outcome: Outcome, units: UnitSystem = "metric") -> tup
     """The ladder as rows."""
 
     def shown(value: float, kind: str) -> str:
-        return present.text(value, kind, units) if math.isfinite(value) else "\u2013"
+        return present.text(value, kind, units) if math.isfinite(value) else _NOTHING
+
+    def part(value: float) -> str:
+        return present.percent(value) if math.isfinite(value) else _NOTHING
 
     return tuple(
         RungRow(
             title=r.title,
             standing="comparison" if r.reference else str(r.standing),
-            ratio=present.percent(float(r.ratio)) if math.isfinite(float(r.ratio)) else "\u2013",
+            ratio=part(float(r.ratio)),
             leg=shown(float(r.leg), "length"),
+            at_leg=part(float(r.at_leg)),
             anchor=shown(float(r.anchor), "force"),
             remark="; ".join(t for t in (r.reason, r.unsafe) if t),
             chosen=r.key == outcome.method,

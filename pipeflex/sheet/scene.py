@@ -2,6 +2,8 @@
 
 import math
 from collections.abc import Iterator
+from dataclasses import replace
+from itertools import pairwise
 
 import numpy as np
 
@@ -20,6 +22,8 @@ from pipeflex.sheet.drawing.standing import standing
 __all__ = ["VIEWS", "Scene", "scene"]
 
 _LONGEST = 22
+_COVER_SHOWN = (1.0, 4.5)
+"""The outside of the insulation is drawn where it stands so far from the centreline on paper [mm]."""
 _ROOM_SHOWN = 1.8
 """A room up to so many times the leg is drawn; a greater one is only named."""
 
@@ -52,6 +56,8 @@ def scene(
         pipe.insulation_thickness + pipe.cladding_thickness if pipe.insulation_thickness else 0.0
     )
     covered = run.on_paper(outer)
+    if not _COVER_SHOWN[0] < covered < _COVER_SHOWN[1]:
+        covered = 0.0
     clear = max(1.8, covered + 0.7)
     _pipe(board, run, covered)
     _ends(board, run)
@@ -59,14 +65,14 @@ def scene(
     _supports(board, run, layout, clear)
     times = overlays.hot_shape(board, run, outcome)
     room = _room(board, run, outcome, view)
-    _corner_of_paper(board, run, layout, view)
     _strip(board, run, outcome, units, view, times)
+    _directions(board, run, layout)
     if band is not None:
         overlays.flags(board, *band)
     place_dimensions(board, _dimensions(run, outcome, units, view, focus, clear, room))
+    overlays.growth_arrows(board, run, outcome, clear, units)
     _letters(board, run, layout, clear)
     _end_names(board, run, layout, clear)
-    overlays.growth_arrows(board, run, outcome, clear, units)
     _support_names(board, run, layout, units, clear)
     return Scene(
         title=f"{view}, {run.scale_text}",
@@ -81,9 +87,7 @@ def scene(
     )
 
 
-def _laid_out(
-    outcome: Outcome, units: UnitSystem, view: str, viewpoint: int, width: float, height: float
-) -> DrawnRun:
+def _laid_out(outcome: Outcome, units: UnitSystem, view: str, viewpoint: int, width: float, height: float) -> DrawnRun:
     layout = outcome.design.layout
     inner = (18.0, 18.0, width - 36.0, height - 18.0 - 31.0)
     room = _drawn_room(outcome)
@@ -107,7 +111,7 @@ def _pipe(board: Board, run: DrawnRun, covered: float) -> None:
     """The pipe as one heavy line, and the outside of its insulation as thin ones where they stand clear."""
     for piece in run.centreline():
         points = [run.paper(p) for p in piece]
-        if covered > 1.0:
+        if covered:
             for side in (covered, -covered):
                 board.draw(_beside(points, side), "faint", THIN, keep="")
         board.draw(points, weight=HEAVY, keep="solid", clear=max(0.6, covered))
@@ -121,10 +125,10 @@ def _pipe(board: Board, run: DrawnRun, covered: float) -> None:
 
 def _beside(points: list[XY], distance: float) -> list[XY]:
     """A line beside another, on its left as it runs."""
-    ways = [u for a, b in zip(points, points[1:], strict=False) if (u := unit_between(a, b)) != (0.0, 0.0)]
+    ways = [u for a, b in pairwise(points) if (u := unit_between(a, b)) != (0.0, 0.0)]
     if not ways:
         return points
-    places = [points[0]] + [b for a, b in zip(points, points[1:], strict=False) if math.dist(a, b) > 1e-9]
+    places = [points[0]] + [b for a, b in pairwise(points) if math.dist(a, b) > 1e-9]
     out = []
     for p, u, v in zip(places, [ways[0], *ways], [*ways, ways[-1]], strict=True):
         n, m = square_to(u), square_to(v)
@@ -173,8 +177,8 @@ def _room(board: Board, run: DrawnRun, outcome: Outcome, view: str) -> tuple[XY,
     return None if view != "plan" or room is None else overlays.room_edge(board, run, room)
 
 
-def _corner_of_paper(board: Board, run: DrawnRun, layout: Layout, view: str) -> None:
-    """Directions in words, in that corner of the paper which is free."""
+def _directions(board: Board, run: DrawnRun, layout: Layout) -> None:
+    """Directions in words, at the right above if it is free there."""
     words = [layout.along, layout.across, "up"]
     vectors = np.eye(3)
     arms = [
@@ -182,16 +186,10 @@ def _corner_of_paper(board: Board, run: DrawnRun, layout: Layout, view: str) -> 
         for v, w in zip(vectors, words, strict=True)
     ]
     arms = [(d, w) for d, w in arms if d != (0.0, 0.0)]
-    room = 10.0 + max((text_width(w, SMALL) for d, w in arms if abs(d[0]) > 0.4), default=0.0)
-    left = 12.0 if all(d[0] > -0.1 for d, _ in arms) else room
-    right = 4.0 if all(d[0] < 0.1 for d, _ in arms) else room
-    up, down = 14.0, (5.0 if all(d[1] < 0.1 for d, _ in arms) else 12.0)
-    corners = [
-        (board.width - right, up), (left, up + 6), (board.width - right, board.height - 14 - down),
-        (left, board.height - 14 - down),
-    ]  # fmt: skip
-    at = next((c for c in corners if board.free_for_line((c[0] - left + 3, c[1]), (c[0] + right - 3, c[1]), 8)), None)
-    marks.axes(board, at or corners[0], arms)
+    across = [text_width(w, SMALL) for d, w in arms if abs(d[0]) > 0.4]
+    side = 12.0 + max(across, default=0.0)
+    columns = [board.width - side + i * (2 * side - board.width) / 8 for i in range(9)]
+    marks.axes(board, ((x, y) for y in (14.0, 18.0, board.height - 22.0) for x in columns), arms)
 
 
 def _strip(board: Board, run: DrawnRun, outcome: Outcome, units: UnitSystem, view: str, times: int | None) -> None:
@@ -290,25 +288,23 @@ def _dimensions(
         leg = run.legs[0]
         place = leg.place(leg.length - float(layout.first_guide))
         if place is not None:
-            yield dimension(
-                run.paper(place), on_paper[1], float(layout.first_guide), leg.unit, "layout.first_guide"
-            )
+            yield dimension(run.paper(place), on_paper[1], float(layout.first_guide), leg.unit, "layout.first_guide")
     if room is not None:
         limit, path = float(outcome.design.limits.room), "limits.room"
         words = f"room {length_text(limit, units)}"
         yield Dimension(room[0], room[1], words, ((1.0, 0.0), (-1.0, 0.0)), path, focus == path, clear)
     paths = leg_paths(layout)
     lengths = [leg.length for leg in run.legs]
-    for i in sorted(range(len(run.legs)), key=lambda i: lengths[i] if not run.legs[i].broken else math.inf):
+    outer = (0, len(lengths) - 1)
+    for i in sorted(range(len(lengths)), key=lambda i: (i in outer and len(lengths) > 2, lengths[i])):
         if paths[i] is not None:
             yield dimension(on_paper[i], on_paper[i + 1], lengths[i], run.legs[i].unit, paths[i] or "")
     if "run" in layout.sizes and len(run.legs) > 2:
         east = np.array([1.0, 0.0, 0.0])
         across = run.corners[-1] - run.corners[0]
         far = run.corners[0] + east * across[0]
-        yield dimension(
-            on_paper[0], run.paper(far), float(layout.sizes["run"]), east, "layout.sizes.run", row=1
-        )
+        whole = dimension(on_paper[0], run.paper(far), float(layout.sizes["run"]), east, "layout.sizes.run", row=1)
+        yield replace(whole, foot=on_paper[-1])
 
 
 def leg_paths(layout: Layout) -> list[str | None]:
@@ -339,8 +335,9 @@ def _support_names(board: Board, run: DrawnRun, layout: Layout, units: UnitSyste
             gap_said = True
         n = marks.under(u)
         board.beside(
-            run.paper(place), ", ".join(words), first=(-n[0], -n[1]), size=SMALL,
+            run.paper(place),
+            ", ".join(words),
+            first=(-n[0], -n[1]),
+            size=SMALL,
             distances=[clear + d for d in (2.8, 4.7, 6.7, 9.2, 12.2)],
         )
-
-

@@ -16,8 +16,7 @@ CAUTIONS: Final = (
     " specification, local law and licensed practice prevail over it.",
     "Values and clauses marked as from memory are to be confirmed in the licensed standard before use.",
     "Not covered: least wall and thinning of bends; the creep range; brittle fracture at the minimum temperature.",
-    "Not covered: permitted loads of nozzles and machines. The maker's limits count only as far as they were"
-    " entered.",
+    "Not covered: permitted loads of nozzles and machines. The maker's limits count only as far as they were entered.",
     "Not covered: vibration, surge and steam hammer, slug flow, earthquake, wind, snow.",
     "Not covered: small branches near the loop; stresses in shoes and welded attachments; what the rack can carry.",
     "Not covered: lined, jacketed, traced and buried lines; soldered joints.",

@@ -74,18 +74,18 @@ def _columns(rows: Iterable[Sequence[str]], widths: tuple[int, ...]) -> Iterator
 
 def _loads(rows: Iterable[LoadRow]) -> Iterator[str]:
     for r in rows:
-        for i, (thermal, friction, total) in enumerate(r.parts):
+        for i, (thermal, friction, weight, total) in enumerate(r.parts):
             head = (r.point, r.direction, r.state) if i == 0 else ("", "", "")
-            yield from _columns(
-                [(*head, f"{total} = thermal {thermal} + friction {friction}")], (18, 18, 20, 41)
-            )
+            sum_ = f"{total} = thermal {thermal}, friction {friction}, weight {weight}"
+            yield from _columns([(*head, sum_)], (18, 18, 20, 41))
 
 
 def _ladder(view: "View") -> Iterator[str]:
     if view.rungs:
         yield from _section("Ladder: rule to beam")
-        rows = [(r.title, r.standing, r.ratio, r.leg, r.anchor, r.remark) for r in view.rungs]
-        yield from _columns(rows, (22, 12, 7, 9, 9, 36))
+        heads = ("method", "state", "ratio", "leg asked", "there", "anchor", "remark")
+        rows = [(r.title, r.standing, r.ratio, r.leg, r.at_leg, r.anchor, r.remark) for r in view.rungs]
+        yield from _columns([heads, *rows], (20, 12, 7, 9, 7, 10, 30))
     if view.turns:
         yield from _section("Where the answer turns")
         yield from _columns([(t[0], f"now {t[1]}", f"turns at {t[2]}") for t in view.turns], (34, 20, 24))
@@ -98,7 +98,8 @@ def _line(line: Line) -> Iterator[str]:
     if line.form == "sentence":
         yield from _wrapped("     " + line.words, 5)
         return
-    words = f"{line.number:>3}  {line.words}" + (f" {line.symbol}" if line.form == "value" else "") + (f", {line.where}" if line.where else "")
+    symbol = f" {line.symbol}" if line.form == "value" else ""
+    words = f"{line.number:>3}  {line.words}{symbol}" + (f", {line.where}" if line.where else "")
     tick = f"{line.result}  [ ]"
     yield words.ljust(WIDTH - len(tick) - 1) + " " + tick
     if line.reason is not None:

@@ -2,6 +2,7 @@
 
 import math
 from collections.abc import Iterable, Sequence
+from itertools import pairwise
 
 from pipeflex.sheet.drawing.parts import (
     TEXT,
@@ -115,7 +116,7 @@ class Board:
         """Keep the ground along a line."""
         taken = {"solid": self._solid, "thin": self._thin}.get(keep)
         if taken is not None:
-            for a, b in zip(points, points[1:], strict=False):
+            for a, b in pairwise(points):
                 taken.add(band(a, b, half))
 
     def fill(self, points: Iterable[XY], role: Role = "ink", opacity: float = 1.0, keep: str = "") -> None:
@@ -200,5 +201,3 @@ def readable(direction: XY) -> float:
     elif turn < -90.5:
         turn += 180
     return turn
-
-

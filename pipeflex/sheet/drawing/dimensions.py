@@ -28,6 +28,8 @@ class Dimension:
     lit: bool = False
     clear: float = 0.0
     row: int = 0
+    foot: XY | None = None
+    """Where the extension line of `b` begins, if not at `b`."""
 
 
 def place_dimensions(board: Board, wanted: Iterable[Dimension]) -> None:
@@ -45,7 +47,8 @@ def _place(board: Board, d: Dimension) -> bool:
         for side in d.sides:
             offset = _FIRST + d.clear + row * _STEP
             a, b = moved(d.a, side, offset), moved(d.b, side, offset)
-            if not _open(board, a, b, along, d.clear):
+            beyond = moved(a, side, 1.6), moved(b, side, 1.6)
+            if not board.inside(beyond) or not _open(board, a, b, along, d.clear):
                 continue
             label = next((t for t in _letters(d, a, b, along, side) if board.free_for_letters(t)), None)
             if label is not None:
@@ -69,7 +72,10 @@ def _letters(d: Dimension, a: XY, b: XY, along: XY, side: XY) -> Sequence[Label]
         up = (-up[0], -up[1])
     width = text_width(d.text, _TEXT) * (1.08 if d.lit else 1)
     long = ((b[0] - a[0]) ** 2 + (b[1] - a[1]) ** 2) ** 0.5
-    places = [moved(middle, up, _LIFT), moved(middle, up, -_LIFT)] if width < long - 0.6 else []
+    spare = max(0.0, long - width) / 2 - 2.6
+    shifts = (0.0, spare / 2, -spare / 2, spare, -spare) if spare > 3 else (0.0,)
+    inside = [moved(moved(middle, up, lift), along, s) for lift in (_LIFT, -_LIFT) for s in shifts]
+    places = inside if width < long - 0.6 else []
     reach = (width + long) / 2 + 3.4
     places += [moved(middle, along, reach), moved(middle, along, -reach)]
     role: Role = "lit" if d.lit else "ink"
@@ -79,8 +85,9 @@ def _letters(d: Dimension, a: XY, b: XY, along: XY, side: XY) -> Sequence[Label]
 def _draw(board: Board, d: Dimension, a: XY, b: XY, along: XY, side: XY, label: Label) -> None:
     role: Role = "lit" if d.lit else "ink"
     weight = 3 * THIN if d.lit else THIN * 0.8
-    for foot, end in ((d.a, a), (d.b, b)):
-        board.draw((moved(foot, side, 1.3), moved(end, side, 1.3)), role, weight, clear=0.2)
+    for foot, end in ((d.a, a), (d.foot or d.b, b)):
+        way = unit_between(foot, end)
+        board.draw((moved(foot, way, 1.3), moved(end, side, 1.3)), role, weight, clear=0.2)
     back = (-along[0], -along[1])
     long = ((b[0] - a[0]) ** 2 + (b[1] - a[1]) ** 2) ** 0.5
     if long > 6.0:

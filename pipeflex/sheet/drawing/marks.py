@@ -1,13 +1,15 @@
 """Marks on the pipe: ends, supports, breaks, and what stands in the corners of the drawing."""
 
 import math
+from collections.abc import Iterable, Sequence
 
 from pipeflex.present import UnitSystem, display, number
 from pipeflex.sheet.drawing.board import Board, moved, square_to
-from pipeflex.sheet.drawing.parts import HEAVY, MEDIUM, SMALL, THIN, XY, Label
+from pipeflex.sheet.drawing.parts import HEAVY, MEDIUM, SMALL, THIN, XY, Anchor, Label
 
 _BAR = 5.0
 _GROUND = 2.4
+_ARM = 8.0
 
 
 def anchor(board: Board, at: XY, outward: XY, half: float = _BAR) -> None:
@@ -112,17 +114,24 @@ def break_mark(board: Board, at: XY, along: XY) -> None:
     board.hold((moved(at, n, -3.4), moved(at, n, 3.4)), "solid", gap + 0.4)
 
 
-def axes(board: Board, at: XY, arms: list[tuple[XY, str]]) -> None:
-    """Directions in words: arrows from one point; a lone `north` gets the north arrow."""
-    for direction, word in arms:
-        if direction == (0.0, 0.0):
-            continue
-        tip = moved(at, direction, 8.0)
-        board.draw((at, tip), weight=THIN * 1.3, keep="solid")
-        board.arrow_head(tip, direction, length=2.8)
-        end = "middle" if abs(direction[0]) < 0.4 else "start" if direction[0] > 0 else "end"
-        place = moved(tip, direction, 2.6 if end == "middle" else 1.2)
-        board.write(Label(place, word, size=SMALL, anchor=end, bold=word == "N"))  # type: ignore[arg-type]
+def axes(board: Board, places: Iterable[XY], arms: Sequence[tuple[XY, str]]) -> None:
+    """Directions in words: arrows from one point, at the first of the places where there is room."""
+    for at in places:
+        labels = [_axis_word(at, direction, word) for direction, word in arms]
+        tips = [moved(at, direction, _ARM) for direction, _ in arms]
+        if all(map(board.free_for_letters, labels)) and all(board.free_for_line(at, tip, 1.0) for tip in tips):
+            for (direction, _), tip, label in zip(arms, tips, labels, strict=True):
+                board.draw((at, tip), weight=THIN * 1.3, keep="solid")
+                board.arrow_head(tip, direction, length=2.8)
+                board.write(label)
+            return
+    board.left_out.append(", ".join(word for _, word in arms))
+
+
+def _axis_word(at: XY, direction: XY, word: str) -> Label:
+    end: Anchor = "middle" if abs(direction[0]) < 0.4 else "start" if direction[0] > 0 else "end"
+    place = moved(at, direction, _ARM + (2.6 if end == "middle" else 1.2))
+    return Label(place, word, size=SMALL, anchor=end, bold=word == "N")
 
 
 def scale_bar(board: Board, left: XY, scale: int, units: UnitSystem) -> float:

@@ -138,8 +138,7 @@ def flags(board: Board, title: str, value: Floats, feet: Feet) -> None:
     peaks = [
         i
         for k, i in enumerate(shown)
-        if value[i] > 1
-        and value[i] >= max(value[shown[max(k - 1, 0)]], value[shown[min(k + 1, len(shown) - 1)]])
+        if value[i] > 1 and value[i] >= max(value[shown[max(k - 1, 0)]], value[shown[min(k + 1, len(shown) - 1)]])
     ]
     greatest = max(shown, key=lambda i: value[i])
     placed: list[XY] = []

@@ -39,7 +39,7 @@ def view_matrix(view: str, viewpoint: int) -> Floats:
         return np.array([[1.0, 0, 0], [0, 0, 1]])
     c, s = ((1, 0), (0, 1), (-1, 0), (0, -1))[viewpoint % 4]
     turned = np.array([[c, -s, 0], [s, c, 0], [0, 0, 1]])
-    return np.array([[_ROOT, -_ROOT, 0], [_HALF, _HALF, 1]]) @ turned
+    return np.asarray(np.array([[_ROOT, -_ROOT, 0], [_HALF, _HALF, 1]]) @ turned)
 
 
 @dataclass(frozen=True, slots=True)
@@ -124,7 +124,7 @@ class DrawnRun:
             if distance <= taken + arc and arc > 0:
                 return self._on_bend(i, (distance - taken) / arc * turn)
             taken, begin = taken + arc, cut
-        return self.corners[-1]
+        return np.asarray(self.corners[-1])
 
     def _turn(self, i: int) -> tuple[float, float]:
         """Change of direction at an inner corner [rad], and the straight that its bend takes from a leg [m]."""
