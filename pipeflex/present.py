@@ -77,6 +77,7 @@ DISPLAY: Final[dict[str, tuple[Display, Display]]] = {
     "bending stiffness": (_d("kN·m²", 1000, 0, "kN*m**2"), _d("lbf·ft²", _LBF * _FOOT**2, 0, "lbf*ft**2")),
     "acceleration": (_d("m/s²", 1, 5, "m/s**2"), _d("ft/s²", _FOOT, 4, "ft/s**2")),
 }
+_MOST_DECIMALS: Final = 9
 _PAIR: Final = {"metric": 0, "us": 1}
 
 
@@ -94,16 +95,18 @@ def shown(value: float, kind: str, units: UnitSystem = "metric") -> float:
 def number(value: float, kind: str, units: UnitSystem = "metric", decimals: int | None = None) -> str:
     """An SI number as text in the display unit, without the unit.
 
-    The usual decimals of the kind, and three figures where those would hide the number; thousands are
-    set apart by thin spaces from five digits on.
+    The usual decimals of the kind, and three figures where those would hide the number (a temperature keeps its
+    decimals: its zero is no nothing); thousands are set apart by thin spaces from five digits on.
     """
     amount = shown(value, kind, units)
     if math.isinf(amount):
         return "unlimited" if amount > 0 else "-unlimited"
     if decimals is None:
         decimals = display(kind, units).decimals
-        if amount and abs(amount) < 10.0 ** (2 - decimals) and kind != "count":
-            decimals = min(9, max(decimals, 2 - math.floor(math.log10(abs(amount)))))
+        if amount and abs(amount) < 10.0 ** (2 - decimals) and kind not in ("count", "temperature"):
+            decimals = max(decimals, 2 - math.floor(math.log10(abs(amount))))
+            if decimals > _MOST_DECIMALS:
+                return f"{amount:.2e}".replace("-", "\u2212")
     text = f"{amount:.{decimals}f}"
     if not float(text):
         text = text.lstrip("-")

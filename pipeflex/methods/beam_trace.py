@@ -3,6 +3,7 @@
 import numpy as np
 
 from pipeflex.mechanics.beam import Answer
+from pipeflex.mechanics.beam.compliance import yielding
 from pipeflex.mechanics.beam.elements import chunks, elements, holds, members
 from pipeflex.methods.basis import Basis
 from pipeflex.methods.beam_model import Model
@@ -25,7 +26,9 @@ def show_solution(design: Design, basis: Basis, model: Model, answer: Answer, ca
         return
     made = elements(run, chunks(run)[0])
     member = members(made, run)
-    C = np.concatenate([np.zeros((6, 6, 1)), np.cumsum(member.compliance[..., 0], axis=2)], axis=2)
+    one = np.broadcast_to(np.eye(6)[:, :, None, None], (6, 6, len(run.plan.leg), 1))
+    each = yielding(member, one)[..., 0].swapaxes(0, 1)
+    C = np.concatenate([np.zeros((6, 6, 1)), np.cumsum(each, axis=2)], axis=2)
     grown = made.shape.start[..., 0] - made.shape.start[:, :1, 0]
     grown = np.concatenate([grown, made.end], axis=1)
     held = holds(run, made)
