@@ -2,23 +2,26 @@
 
 import math
 from collections.abc import Callable, Sequence
-from dataclasses import replace
+from dataclasses import dataclass, replace
 from typing import Any, Final
 
 import numpy as np
 
-from pipeflex.errors import Fault, InputError, MissingInput, PipeflexError
+from pipeflex.errors import Fault, InputError, MissingInput, PipeflexError, refuse
 from pipeflex.methods.solving import METHODS, method, solve
 from pipeflex.model.design import Design
 from pipeflex.model.fields import SPEC, FrozenMap, Number
 from pipeflex.model.layout import SIZE_WORDS
 from pipeflex.model.outcome import Fit, Outcome, Turn
 from pipeflex.model.record import at, put
+from pipeflex.present import UnitSystem, percent, text
 
 LONGEST: Final = 12.0
 """Longest leg that a fit tries [m]."""
 LEG_STEP: Final = 0.05
 """Step to which a fitted length is rounded up [m]; 2 in for U.S. display."""
+_FARTHEST: Final = 3 * LONGEST
+_GUIDES, _LENGTHS = 40, 60
 _GRID: Final = 65
 _ROUNDS: Final = 4
 
@@ -97,6 +100,7 @@ def fit(
     step: float = LEG_STEP,
     longest: float | None = None,
     key: str | None = None,
+    units: UnitSystem = "metric",
 ) -> Fit:
     """The first adequate value of one length past the stress peak, rounded up to a step.
 
@@ -104,28 +108,56 @@ def fit(
 
     Parameters
     ----------
-    path : length to be fitted.
+    path : length to be fitted: a size, or "layout.first_guide".
     target : greatest ratio of the leading check; the design's own by default.
     step : values tried are its multiples [m].
     longest : end of the search [m].
     key : method; the highest by default.
+    units : of the numbers in `reason` and `help`.
+
+    Returns
+    -------
+    Fit
+        With `value` absent where none holds, and what would help instead.
     """
     if target is None:
         target = float(design.limits.target)
-    if not (math.isfinite(step) and step > 0):
-        raise InputError(Fault("step", step, allowed="above zero", kind="length"))
+    refuse(
+        InputError,
+        (not (math.isfinite(step) and 0 < step <= LONGEST), Fault("step", step, "above zero", "length", high=LONGEST)),
+        (not 0 < target <= 1, Fault("target", target, "above zero", "ratio", high=1.0)),
+    )
     end = min(float(design.limits.room), LONGEST) if longest is None else longest
-    values = step * np.arange(1, int(end / step + 1e-9) + 1)
-    values, outcome = tried(design, path, values, key)
-    label = _label(path)
+    asked = _Asked(design, path, target, step, key, units)
+    values, outcome = tried(design, path, _steps(step, end), key)
     found = None if outcome is None else _first_adequate(outcome, target)
     if found is not None:
         value = round(float(values[found]), 9)
         chosen = put(design, path, value)
         return Fit(path=path, value=value, outcome=solve(chosen, key), design=chosen)
-    reason = f"No {label.lower()} up to {end:g} m holds."
-    return Fit(path=path, value=None, outcome=None, design=None, reason=reason,
-               help=_help(design, path, target, step, end, key, outcome))  # fmt: skip
+    within = "within the room of" if longest is None and end == design.limits.room else "up to"
+    reason = f"No {_label(path).lower()} {within} {asked.length(end)} holds at the target of {percent(target)}."
+    return Fit(path=path, value=None, outcome=None, design=None, reason=reason, help=_help(asked, outcome))
+
+
+@dataclass(frozen=True, slots=True)
+class _Asked:
+    """What a fit was asked."""
+
+    design: Design
+    path: str
+    target: float
+    step: float
+    key: str | None
+    units: UnitSystem
+
+    def length(self, value: float) -> str:
+        return text(value, "length", self.units)
+
+
+def _steps(step: float, end: float) -> np.ndarray:
+    """Multiples of a step up to an end."""
+    return step * np.arange(1, int(end / step + 1e-9) + 1)
 
 
 def _first_adequate(outcome: Outcome, target: float) -> int | None:
@@ -140,34 +172,70 @@ def _first_adequate(outcome: Outcome, target: float) -> int | None:
     return int(after[0]) if len(after) else None
 
 
-def _help(
-    design: Design, path: str, target: float, step: float, end: float, key: str | None, outcome: Outcome | None
-) -> str:
-    """What would help where no value holds: more room, a guide farther off, or another limit."""
-    words = _label(path).lower()
+def _help(asked: _Asked, outcome: Outcome | None) -> str:
+    """What would help where no value holds: a longer one with more room, or a guide farther off."""
+    words, design = _label(asked.path).lower(), asked.design
     free = replace_limits(design, room=math.inf)
-    values = step * np.arange(1, int(3 * LONGEST / step) + 1)
-    values, wide = tried(free, path, values, key)
-    found = None if wide is None else _first_adequate(wide, target)
-    if found is not None:
-        assert wide is not None
-        room = float(np.asarray(wide.check("room").demand)[found]) if wide.checks[1:] else math.nan
-        need = f" It needs a room of {room:.2f} m." if room > design.limits.room else ""
-        return f"A {words} of {values[found]:.2f} m would.{need}"
-    if design.layout.first_guide is not None:
-        guides = step * np.arange(1, int(LONGEST / step) + 1)
-        held, moved = tried(
-            put(free, path, float(values[-1])) if len(values) else free, "layout.first_guide", guides, key
-        )
-        if moved is not None and (first := _first_adequate(moved, target)) is not None:
-            return f"With the first guide at {held[first]:.2f} m or farther, a {words} of {values[-1]:.2f} m holds."
+    values, wide = tried(free, asked.path, _steps(asked.step, _FARTHEST), asked.key)
+    found = None if wide is None else _first_adequate(wide, asked.target)
+    if wide is not None and found is not None:
+        taken = float(np.asarray(wide.check("room").demand)[found]) if len(wide.checks) > 1 else 0.0
+        room = f"; it takes a room of {asked.length(taken)}" if taken > design.limits.room else ""
+        return f"A {words} of {asked.length(float(values[found]))} would{room}."
+    if lever := _guide_lever(asked, free):
+        return lever
     if outcome is None:
         return "No value of it makes a run that can be answered."
     last = outcome.row(-1)
     if last.outside:
-        return "; ".join(r.words() for r in last.outside_reasons) + "."
+        return "; ".join(r.words(asked.units) for r in last.outside_reasons) + "."
     worst = last.worst()
-    return f"{worst.title} stays exceeded: it does not depend enough on the {words}." if worst else ""
+    return f"{worst.title} stays at {percent(float(worst.ratio))}: the {words} is no lever." if worst else ""
+
+
+def _guide_lever(asked: _Asked, free: Design) -> str:
+    """The nearest distance of the first guide at which some value of the fitted length holds, and that value."""
+    layout = free.layout
+    if layout.first_guide is None or asked.path == "layout.first_guide":
+        return ""
+    present = float(layout.first_guide)
+    guides = np.unique(np.ceil(np.linspace(present, max(LONGEST, present), _GUIDES) / asked.step) * asked.step)
+    lengths = _steps(max(asked.step, LONGEST / _LENGTHS), LONGEST)
+    guide, length = (v.ravel() for v in np.meshgrid(guides, lengths, indexing="ij"))
+    kept, column = _placed(free, asked.path, length, "layout.first_guide", guide)
+    outcome, rows, _ = sift(column, lambda d: solve(d, asked.key)) if column is not None else (None, kept, ())
+    if outcome is None:
+        return ""
+    leading = np.asarray(outcome.leading.ratio)
+    good = (leading <= asked.target) & np.asarray(outcome.adequate())
+    if not good.any():
+        return ""
+    first = np.flatnonzero(good)
+    guide, length = guide[kept][rows], length[kept][rows]
+    at_guide = guide[first].min()
+    value = length[first][guide[first] == at_guide].min()
+    word = _label(asked.path).lower()
+    return (
+        f"The guide is the lever: with the first guide at {asked.length(float(at_guide))} or farther, "
+        f"a {word} of {asked.length(float(value))} holds."
+    )
+
+
+def _placed(
+    design: Design, path: str, values: np.ndarray, other: str, others: np.ndarray
+) -> tuple[np.ndarray, Design | None]:
+    """A column with two lengths varied, without the pairs that make no layout; their indices."""
+    kept = np.arange(len(values))
+    while len(kept):
+        try:
+            wide = vary(design.column().taken(np.zeros(len(kept), int)), path, values[kept])
+            return kept, vary(wide, other, others[kept])
+        except InputError as error:
+            bad = sorted({r for fault in error.faults for r in fault.rows})
+            if not bad:
+                raise
+            kept = np.delete(kept, bad)
+    return kept, None
 
 
 def replace_limits(design: Design, **changes: Any) -> Design:
