@@ -17,8 +17,7 @@ FRACTIONS: Final = tuple(float(v) for v in np.linspace(0.0, 1.0, 9))
 
 def shapes_of(design: Design, basis: Basis, model: Model, answer: Answer) -> tuple[Shape, ...]:
     """Movement along the run in every case, from the tie-in day that makes it greatest."""
-    legs = np.repeat(model.run.plan.leg[None], len(FRACTIONS), axis=0)
-    order = _in_order(len(model.run.plan.leg))
+    legs = tuple(int(leg) for leg in np.repeat(model.run.plan.leg, len(FRACTIONS)))
     if model.uniform:
         moved = movements(answer, FRACTIONS)
         each = [moved.movement[0] * g for g in basis.case_growth]
@@ -31,18 +30,12 @@ def shapes_of(design: Design, basis: Basis, model: Model, answer: Answer) -> tup
     return tuple(
         Shape(
             state=case.name,
-            points=moved.position[:, order],
-            movement=movement[:, order],
-            leg=tuple(int(v) for v in legs.reshape(-1)[order]),
+            points=moved.position,
+            movement=movement,
+            leg=legs,
         )
         for case, movement in zip(design.duty.cases, each, strict=True)
     )
-
-
-def _in_order(elements: int) -> np.ndarray:
-    """Indices of (fraction, element) along the run."""
-    flat = np.arange(len(FRACTIONS) * elements).reshape(len(FRACTIONS), elements)
-    return flat.T.reshape(-1)
 
 
 def stress_along(model: Model, sections: Sections, found: Range) -> tuple[Along, ...]:

@@ -212,7 +212,7 @@ def trace_range(design: Design, sections: Sections, found: Range, calc: Calc) ->
     if not calc.tracing:
         return
     names = ("M_i", "M_o", "M_t", "F_x")
-    columns = [found.all_moments[n].reshape(-1) for n in names]
+    columns = [_clean(found.all_moments[n].reshape(-1)) for n in names]
     columns += [sections.i_i.reshape(-1), sections.i_o.reshape(-1), found.every.reshape(-1)]
     order = _along(len(sections.Z))
     seen: set[str] = set()
@@ -236,6 +236,11 @@ def trace_range(design: Design, sections: Sections, found: Range, calc: Calc) ->
         calc.given(name, np.abs(found.pool[name]), "beam solution, at the governing point")
     pool = {**found.pool, **{n: np.abs(found.pool[n]) for n in names}, "i_t": 1.0, "i_a": 1.0}
     follow(design.code.expansion_stress, pool, calc)
+
+
+def _clean(values: Rows) -> Rows:
+    """What rounding leaves of nothing is nothing, on paper."""
+    return np.where(np.abs(values) > 1e-9 * np.abs(values).max(initial=0.0), values, 0.0)
 
 
 def _along(elements: int) -> list[int]:

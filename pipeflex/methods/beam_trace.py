@@ -10,6 +10,8 @@ from pipeflex.methods.beam_model import Model
 from pipeflex.model.design import Design
 from pipeflex.trace import Calc, Matrix
 
+_NOTHING = 1e-11
+"""Part of the greatest entry below which an entry is what rounding left of nothing."""
 _WORDS = ("force along", "force across", "force up", "moment about along", "moment about across", "moment about up")
 
 
@@ -44,6 +46,7 @@ def show_solution(design: Design, basis: Basis, model: Model, answer: Answer, ca
     ])  # fmt: skip
     u = np.array([lines[i][:3] @ grown[:, stations[i]] for i in alive]) * float(basis.e[0])
     X = np.linalg.solve(D, u)
+    D, u, X = (np.where(np.abs(v) > _NOTHING * np.abs(v).max(), v, 0.0) for v in (D, u, X))
     labels = [names[i] for i in alive]
     heads = tuple(f"D_{j + 1}" for j in range(len(alive)))
     calc.say("Flexibility of the run with its first end held; guides and line stops closed, no friction")
