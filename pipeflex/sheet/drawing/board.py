@@ -167,13 +167,17 @@ class Board:
         role: Role = "ink",
         size: float = TEXT,
         bold: bool = False,
+        spread: int = 6,
     ) -> bool:
-        """A label near a point, trying the direction `first` and then all round, farther and farther."""
+        """A label near a point, trying the direction `first` and then round it, farther and farther.
+
+        spread : how far round, in twelfths of a turn to each side.
+        """
         start = math.atan2(first[1], first[0]) if first and first != (0.0, 0.0) else -math.pi / 2
 
         def candidates() -> Iterable[Label]:
             for distance in distances:
-                for step in (0, 1, -1, 2, -2, 3, -3, 4, -4, 5, -5, 6):
+                for step in (0, 1, -1, 2, -2, 3, -3, 4, -4, 5, -5, 6)[: 2 * spread + 1]:
                     angle = start + step * math.pi / 6
                     d = (math.cos(angle), math.sin(angle))
                     anchor: Anchor = "start" if d[0] > 0.4 else "end" if d[0] < -0.4 else "middle"

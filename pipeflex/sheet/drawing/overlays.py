@@ -148,7 +148,7 @@ def flags(board: Board, title: str, value: Floats, feet: Feet) -> None:
         if any(math.dist(top, p) < 9 for p in placed):
             continue
         text = present.percent(float(value[i]))
-        if board.beside(top, text, first=n, distances=(3.4, 5.0, 7.0, 9.5, 12.5), bold=bool(value[i] > 1)):
+        if board.beside(top, text, first=n, distances=(3.4, 5.0, 7.0, 9.5, 12.5), bold=bool(value[i] > 1), spread=2):
             board.draw((foot, moved(top, n, 1.2)), "ink", THIN, keep="")
             board.spot(top, f"{title}: {text}")
             placed.append(top)
