@@ -43,7 +43,7 @@ function field(control, kind, tell, ...inBox) {
     attribute(el, "title", spec.help || null);
     put(error, spec.error);
     put(tail, spec.echo);
-    put(demo, spec.demo ? "demo value" : "");
+    put(demo, spec.demo && !spec.error ? "demo value" : "");
     el.classList.toggle("pf-demo", spec.demo);
     attribute(control, "aria-invalid", spec.error ? "true" : null);
     control.disabled = spec.disabled;
