@@ -20,9 +20,10 @@ from numpy.typing import NDArray
 
 from pipeflex.mechanics.beam.compliance import Array, Indices
 
-_NEWTON = 100
-_MULTIPLIER = 50
-_SOFT = 1e-4
+_NEWTON = 30
+_MULTIPLIER = 200
+_SOFT = 1e-3
+_SOFTER, _SOFTEST = 10.0, 1e6
 _EXACT = 1e-10
 _ROUNDING = 1e-13
 _GOOD = 1e-7
@@ -72,19 +73,22 @@ def balance(
     """
     if not len(closed):
         return Balance(closed, closed, 0.0, 0, True)
-    inner = _Inner(laws, stiffness, closed, slid, limit)
-    u, force, total = start.u, start.force, 0
+    # counted from where the step begins: what sticks has not moved at all, and its stiff law loses no digits
+    inner = _Inner(laws, stiffness, closed + stiffness @ start.u, slid - start.u[laws.dof], limit)
+    u, force, total, soft = np.zeros_like(start.u), start.force, 0, _SOFT
     for _ in range(_MULTIPLIER):
         u, left, used = inner.minimum(u, force)
         total += used
+        soft = min(soft * _SOFTER, _SOFTEST) if used == _NEWTON else max(soft / _SOFTER, _SOFT)
         previous, force = force, inner.force(u, force)
         change = float(np.abs(force - previous).max())
         accuracy = inner.accuracy(u, force)
-        if change <= accuracy:
+        if change <= accuracy and used < _NEWTON:
             break
+        inner.soften(soft)
     left = max(left, change)
     enough = 10.0 * accuracy + _GOOD * float(np.abs(force).max())
-    return Balance(u, force, left, total, left <= enough)
+    return Balance(start.u + u, force, left, total, left <= enough)
 
 
 class _Inner:
@@ -94,13 +98,17 @@ class _Inner:
         self.laws, self.stiffness, self.closed, self.slid = laws, stiffness, closed, slid
         self.size = np.abs(stiffness)
         self.limit = np.where(laws.frictional, limit, np.inf)
-        diagonal = stiffness.diagonal()[laws.dof]
-        soft = _SOFT / np.maximum(diagonal, diagonal[laws.partner])
-        self.soft, self.whole = soft, soft + laws.give
-        self.dead = laws.gap / self.whole
-        self.paired = laws.partner != np.arange(len(soft))
-        self.sums = np.zeros((len(closed), len(soft)))
-        self.sums[laws.dof, np.arange(len(soft))] = 1.0
+        self.paired = laws.partner != np.arange(len(laws.dof))
+        self.sums = np.zeros((len(closed), len(laws.dof)))
+        self.sums[laws.dof, np.arange(len(laws.dof))] = 1.0
+        self.soften(_SOFT)
+
+    def soften(self, share: float) -> None:
+        """Give every law a softness: a share of what the pipe itself gives there, all else held."""
+        diagonal = self.stiffness.diagonal()[self.laws.dof]
+        self.soft = share / np.maximum(diagonal, diagonal[self.laws.partner])
+        self.whole = self.soft + self.laws.give
+        self.dead = self.laws.gap / self.whole
 
     def accuracy(self, u: Array, force: Array) -> float:
         """What rounding and the wanted digits leave [N]."""
