@@ -33,7 +33,7 @@ from pipeflex.mechanics.beam.sweep import Answer, free_twists, on_supports, swee
 
 _LIMIT_ROUNDS = 60
 _DAMPED_AFTER = 12
-_LIMIT_EXACT = 1e-7
+_LIMIT_EXACT = 1e-8
 _PARALLEL = 0.999
 _OWN_WAY = 0.05
 
