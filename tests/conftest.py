@@ -51,7 +51,7 @@ def line():
             pipe=pipe(material, size, schedule, expansion=expansion, **(pipe_fields or {})),
             layout=Layout(
                 shape=shape,
-                sizes=sizes or given[shape],
+                sizes=given[shape] if sizes is None else sizes,
                 **{"corners": elbow("DN 200"), **layout},
             ),
             duty=Duty(**{"cases": cases, **(duty or {})}),
