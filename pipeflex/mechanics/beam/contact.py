@@ -159,16 +159,19 @@ class _Inner:
             if np.abs(step).max() <= _STALLED * np.abs(u).max():
                 return u, left, used
             resisted = self.stiffness @ step
-            length, steep = 1.0, abs(float(step @ gradient))
-            low, high = 0.0, 1.0
+            length, steep = 1.0, -float(step @ gradient)
+            low, high, at_low, at_high = 0.0, 1.0, -steep, 0.0
             for _ in range(30):
-                there = u + length * step
-                trial = self.trial(there, last)
+                trial = self.trial(u + length * step, last)
                 gradient = held + length * resisted - self.sums @ self._given(trial)
                 slope = float(step @ gradient)
                 if abs(slope) <= 0.5 * steep or (length == 1.0 and slope <= 0.0):
                     break
-                low, high = (length, high) if slope < 0.0 else (low, length)
-                length = 0.5 * (low + high)
+                if slope < 0.0:
+                    low, at_low = length, slope
+                else:
+                    high, at_high = length, slope
+                secant = at_low / (at_low - at_high)
+                length = low + (high - low) * min(max(secant, 0.1), 0.9)
             u, held = u + length * step, held + length * resisted
         return u, float(np.abs(gradient).max()), _NEWTON
