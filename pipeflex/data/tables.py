@@ -234,6 +234,7 @@ def _roots() -> list[tuple[Path, str]]:
 
 
 def near(wanted: str, entries: Iterable[str]) -> tuple[str, ...]:
+    """The entries that are spelled most like the wanted one, the nearest first."""
     return tuple(get_close_matches(wanted, sorted({e for e in entries if e}), n=_NEAR, cutoff=0.0))
 
 
