@@ -144,6 +144,7 @@ def _would_do(kind: str) -> list[str]:
 
 
 def permitted(kind: str) -> str:
+    """What may be typed for a kind of quantity, in words."""
     units = _would_do(kind)
     named = " or ".join(filter(None, (", ".join(units[:-1]), *units[-1:])))
     if kind in ("ratio", "count"):
@@ -152,6 +153,7 @@ def permitted(kind: str) -> str:
 
 
 def meaning(unit: str, dimension: tuple[int, ...]) -> str:
+    """What kind of quantity a unit measures, in words."""
     if ("diff" in unit or "delta" in unit) and fits(dimension, "temperature change"):
         return "a temperature change"
     return next((_a(kind) for kind in KINDS if fits(dimension, kind)), "something else")
