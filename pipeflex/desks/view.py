@@ -62,6 +62,7 @@ class PictureView(anywidget.AnyWidget):
     stale = traitlets.Bool(help="marked as showing the last good entry").tag(sync=True)
     stale_words = traitlets.Unicode("shows the last good entry").tag(sync=True)
     height = traitlets.Int(360, min=1, help="height on the screen [px]").tag(sync=True)
+    width = traitlets.Int(0, help="width on the screen as the page tells it; 0 before that [px]").tag(sync=True)
     colours = traitlets.Dict(help="role -> (on light, on dark)").tag(sync=True)
     clicked = traitlets.Dict(help="where the reader clicked last").tag(sync=True)
 

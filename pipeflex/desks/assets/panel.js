@@ -161,8 +161,10 @@ function headline() {
     while (lines.children.length < spec.lines.length) lines.append(h("div", {}));
     while (lines.children.length > spec.lines.length) lines.lastChild.remove();
     spec.lines.forEach((line, i) => put(lines.children[i], line));
-    if (spec.verdict !== said) put(status, `${spec.verdict}. ${spec.detail}`);
-    said = spec.verdict;
+    if (spec.verdict && spec.verdict !== said) {      // none: the verdict is being worked out
+      put(status, `${spec.verdict}. ${spec.detail}`);
+      said = spec.verdict;
+    }
   };
   return {el, update};
 }
@@ -172,13 +174,20 @@ function heading() {
   return {el, update: spec => put(el, spec.text)};
 }
 
+// "files:NAME" is a file beside the notebook, as the server hands it out: the page's own address is another.
+function address(link) {
+  if (!link.startsWith("files:")) return link;
+  const [, base, folder] = location.pathname.match(/^(.*?)\/(?:lab|doc|notebooks)(?:\/workspaces\/[^/]+)?(?:\/tree)?\/(.*?)[^/]*$/) ?? [];
+  return base === undefined ? null : `${base}/files/${folder}${encodeURI(link.slice(6))}`;
+}
+
 function note() {
   const text = h("span", {}), link = h("a", {target: "_blank", rel: "noopener"});
   const el = h("div", {class: "pf-note"}, text, " ", link);
   const update = spec => {
     put(text, spec.text);
     put(link, spec.link ? spec.link_text || spec.link : "");
-    attribute(link, "href", spec.link || null);
+    attribute(link, "href", address(spec.link) || null);
     attribute(el, "role", spec.announced ? "status" : null);
   };
   return {el, update};
