@@ -1,0 +1,217 @@
+"""The screen of a desk: headline, fields, picture, checks, foot and bands, one below the other.
+
+A kind of desk says its fields (`entries`) and its fold lines (`summaries`); the rest is the same for all.
+"""
+
+from __future__ import annotations
+
+from collections.abc import Callable, Sequence
+from typing import Final
+
+import ipywidgets
+from IPython.display import display
+
+from pipeflex.desks import shown
+from pipeflex.desks.bound import Words
+from pipeflex.desks.confirm import ConfirmBand
+from pipeflex.desks.core import Desk
+from pipeflex.desks.entry import Band, Button, Headline, Note, Panel, Row
+from pipeflex.desks.figure import figure
+from pipeflex.desks.handing import Handing
+from pipeflex.desks.static import StaticCopy
+from pipeflex.desks.view import PictureView
+from pipeflex.model.words import Verdict
+from pipeflex.sheet import Sheet, scene, svg
+from pipeflex.sheet.headline import headline
+from pipeflex.sheet.scene import VIEWS
+
+_MARKS: Final = {Verdict.FLEXIBLE: "\u2713", Verdict.UNKNOWN: "?"}
+_WAITING: Final = "\u2026"
+_FAILING: Final = "\u2715"
+_DIMENSIONED: Final = ("layout.sizes.", "layout.first_guide", "limits.room")
+"""Fields that have a dimension on the drawing."""
+_HEIGHT: Final = 280
+"""Height of the picture [px]."""
+_WIDTH: Final = 522
+"""Its width until the page tells its own [px]."""
+_SCALE: Final = 3.6
+"""Pixels a millimetre of its paper."""
+_NARROWEST: Final = 110.0
+"""Least paper of a drawing [mm]."""
+_TITLES: Final = ("title", "project", "date", "revision", "by", "checked")
+_LOADS: Final = "Loads: of the pipe on the steel, unfactored"
+
+
+class Screen(Desk):
+    """A desk with a picture of its line."""
+
+    def entries(self) -> Panel:
+        """The fields, in the order of the Tab key."""
+        raise NotImplementedError
+
+    def summaries(self) -> None:
+        """Bring the fold lines up to date."""
+
+    # --- how it stands -------------------------------------------------------------------------------
+
+    def compose(self) -> Sequence[ipywidgets.Widget]:
+        self.view, self.viewpoint, self._lit = "plan", 0, ""
+        self.handing = Handing(self)
+        self.picture = PictureView(height=_HEIGHT)
+        self.picture.observe(lambda _: self.draw(), "width")
+        self.checks = ipywidgets.HTML()
+        self.views = {name: Button(name, self._viewer(name), pressed=name == self.view) for name in VIEWS}
+        self.turn = Button("turn", self._turn_view, help="the next of four viewpoints", hidden=True)
+        self.said = Note()
+        right = ipywidgets.VBox(
+            [Panel(Row(*self.views.values(), self.turn, self.said), problem=self.tell), self.picture, self.checks],
+            layout=ipywidgets.Layout(flex="1 1 0", min_width="0", overflow="hidden"),
+        )
+        body = ipywidgets.HBox([self.entries(), right], layout=ipywidgets.Layout(width="100%", grid_gap="12px"))
+        return [self._top(), body, *self._bottom()]
+
+    def _top(self) -> Panel:
+        self.head, self.memory, self.trouble = Headline(), Note(), Note(announced=True)
+        self.metric = Button("metric", lambda: self.set_units("metric"))
+        self.us = Button("U.S.", lambda: self.set_units("us"))
+        self.back = Button("undo", self.undo, help="take the last change back")
+        self.forth = Button("redo", self.redo, help="bring back what was taken back")
+        self.ask = Button("confirm", self._ask, help="the table values from memory that this design uses")
+        self.again = Button("Read it again", self.read_again, hidden=True)
+        self.over = Button("Write over it", self.write_over, hidden=True)
+        switches = Row(self.memory, self.ask, self.metric, self.us, self.back, self.forth)
+        self.top = Panel(self.head, switches, Row(self.trouble, self.again, self.over), problem=self.tell)
+        return self.top
+
+    def _bottom(self) -> list[ipywidgets.Widget]:
+        confirm = ConfirmBand(self)
+        titles = Panel(*(self.field(Words(path=f"title.{name}")) for name in _TITLES), problem=self.tell)
+        self.results = {
+            "ladder": Band("Ladder", ipywidgets.HTML(), summary="rule to beam", fill=self._fill),
+            "loads": Band("Loads", ipywidgets.HTML(), fill=self._fill),
+            "ledger": Band("Derivation", ipywidgets.HTML(), fill=self._fill),
+        }
+        self.confirming = Band("Confirm values", confirm.panel, fill=confirm.fill)
+        self.block = Band("Title block", titles)
+        bands = (*self.results.values(), self.confirming, self.block)
+        return [Panel(*self.handing.rows(), Row(*bands), problem=self.tell), *(band.content for band in bands)]
+
+    # --- what is shown -------------------------------------------------------------------------------
+
+    def draw(self) -> None:
+        if self.answer is None:
+            return
+        self._lit = self.focus if self.focus.startswith(_DIMENSIONED) else ""
+        made = scene(
+            self.answer.outcome,
+            self.look.units,
+            self.view,
+            viewpoint=self.viewpoint,
+            focus=self._lit,
+            width=max(_NARROWEST, (self.picture.width or _WIDTH) / _SCALE),
+            height=_HEIGHT / _SCALE,
+        )
+        with self.picture.hold_sync():
+            self.picture.scene = figure(made, _SCALE)
+            self.picture.description = made.description
+        room = f"No room for {', '.join(made.left_out)}. " if made.left_out else ""
+        self.said.text = f"{room}{_LOADS}"
+
+    def light(self) -> None:
+        if (self.focus if self.focus.startswith(_DIMENSIONED) else "") != self._lit:
+            self.draw()
+
+    def show(self) -> None:
+        wrong = self.wrong
+        self.picture.stale = bool(wrong)
+        with self.top.held():
+            self._show_headline(wrong)
+            self.metric.pressed, self.us.pressed = self.look.units == "metric", self.look.units == "us"
+            self.back.disabled, self.forth.disabled = not self.can(-1), not self.can(1)
+            self.trouble.set(text=self.problem, hidden=not self.problem)
+            self.again.hidden = self.over.hidden = not self.conflict
+        self.summaries()
+        title = self.held.title
+        self.block.summary = ", ".join(t for t in (title.revision, title.date, title.by) if t) or "empty"
+        self.handing.show(wrong)
+        if self.answer is None:
+            return
+        table = shown.checks_table(self.answer.outcome, self.look.units)
+        self.checks.value = f'<div class="pf-last-good">{table}</div>' if wrong else table
+        if self.answer.whole and not wrong:
+            self._fill()
+            self._show_copy()
+
+    def _show_headline(self, wrong: tuple[str, ...]) -> None:
+        if self.answer is None:
+            detail, lines = "The design cannot be answered.", self.problem.splitlines()
+            self.head.set(verdict=str(Verdict.UNKNOWN), mark="?", detail=detail, lines=lines)
+            return
+        said = headline(self.answer.outcome, self.look.units, self.answer.ladder, self.answer.turns)
+        self.memory.text, self.ask.hidden = said.third.replace(": confirm", ""), not said.third
+        if wrong:
+            detail = f"{' and '.join(wrong)}: the entry is not taken; shown is the last good entry."
+            self.head.set(verdict=str(Verdict.UNKNOWN), mark="?", detail=detail, aside=said.code)
+            return
+        detail = said.first.partition(". ")[2]
+        lines = [said.second if self.answer.complete else f"{said.second} The other methods follow."]
+        verdict, mark = str(said.verdict), _MARKS.get(said.verdict, _FAILING)
+        if not self.sure:
+            verdict, mark, detail = "", _WAITING, f"{detail} Loads follow."
+        self.head.set(verdict=verdict, mark=mark, detail=detail, aside=said.code, lines=lines)
+
+    def _fill(self) -> None:
+        """What the open bands show of the sheet."""
+        if self.answer is None or not self.answer.whole:
+            return
+        made = Sheet(
+            outcome=self.answer.outcome,
+            units=self.look.units,
+            fingerprint="-",
+            ladder=self.answer.ladder,
+            turns=self.answer.turns,
+        )
+        for part, band in self.results.items():
+            if band.open:
+                band.content.value = shown.band(made, part)
+
+    def _show_copy(self) -> None:
+        """The picture that outlives the kernel, with its headline."""
+        if self.copy is not None and self.answer is not None and self.sure:
+            made = scene(self.answer.outcome, self.look.units)
+            self.copy.show(svg(made), f"{self.head.verdict}. {self.head.detail} {made.description}")
+
+    copy: StaticCopy | None = None
+
+    # --- what the buttons do -------------------------------------------------------------------------
+
+    def _viewer(self, name: str) -> Callable[[], None]:
+        def choose() -> None:
+            self.view = name
+            for other, button in self.views.items():
+                button.pressed = other == name
+            self.turn.hidden = name != "isometric"
+            self.draw()
+
+        return choose
+
+    def _turn_view(self) -> None:
+        self.viewpoint = (self.viewpoint + 1) % 4
+        self.draw()
+
+    def _ask(self) -> None:
+        self.confirming.open = True
+
+    # --- where it is shown ---------------------------------------------------------------------------
+
+    def _ipython_display_(self) -> None:
+        display(self.box)  # type: ignore[no-untyped-call]
+        self.copy = StaticCopy("Static copy of the picture, for readers without a kernel")
+        if self.answer is not None:
+            if not self.answer.whole:
+                self.finish()
+            self._show_copy()
+
+    def __repr__(self) -> str:
+        state = self.answer.outcome.verdict if self.answer is not None and self.sure else "no answer"
+        return f"<{self.title} of {self.file.path.name}: {state}>"
