@@ -1,6 +1,5 @@
 """Every input of a design with where it comes from, read off the declared labels of its records."""
 
-import math
 from collections.abc import Iterator
 from dataclasses import MISSING, dataclass
 from typing import Any
@@ -12,9 +11,8 @@ from pipeflex.model.layout import SHAPES, SIZE_WORDS
 from pipeflex.model.record import Record
 from pipeflex.model.words import Origin
 from pipeflex.present import UnitSystem
+from pipeflex.sheet.numbers import exact
 from pipeflex.units import Typed
-
-_MORE_DECIMALS = 3
 
 
 @dataclass(frozen=True, slots=True)
@@ -47,18 +45,6 @@ def inputs(design: Design, units: UnitSystem = "metric") -> tuple[Entry, ...]:
         value = exact(c.value, c.kind, units)
         entries.append(Entry("Confirmed", f"{c.table}, {c.row}, {at}", value, f"confirmed by {c.by} on {c.date}"))
     return tuple(entries)
-
-
-def exact(value: float, kind: str, units: UnitSystem) -> str:
-    """A number with its unit, with more decimals than usual where the input has them."""
-    if not math.isfinite(value):
-        return "none given"
-    usual = present.display(kind, units).decimals
-    amount = present.shown(value, kind, units)
-    for decimals in range(usual, usual + _MORE_DECIMALS):
-        if math.isclose(round(amount, decimals), amount, rel_tol=1e-9, abs_tol=1e-12):
-            return present.text(value, kind, units, decimals)
-    return present.text(value, kind, units)
 
 
 def _value(spec: Any, value: Any, units: UnitSystem) -> str:
@@ -95,10 +81,13 @@ def _origin(design: Design, path: str, record: Record, name: str, spec: Any, kno
 def _of_record(
     design: Design, record: Record, path: str, group: str, units: UnitSystem, known: dict[str, str]
 ) -> Iterator[Entry]:
+    labels: set[str] = set()
     for name, spec in record.specs():
         label, value = getattr(spec, "label", ""), getattr(record, name)
         if not label:
             continue
+        label += ", as named" * (label in labels)
+        labels.add(label)
         where = f"{path}.{name}"
         if isinstance(spec, Numbers):
             for key, one in value.items():

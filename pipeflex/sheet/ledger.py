@@ -9,6 +9,7 @@ from pipeflex.present import UnitSystem
 from pipeflex.quantities import SYMBOLS
 from pipeflex.sheet import expression
 from pipeflex.sheet.expression import Expression
+from pipeflex.sheet.numbers import alike
 from pipeflex.trace import Given, Matrix, Said, Step, Stepped, Tabled, Worked
 
 Form = Literal["heading", "sentence", "value", "worked", "table", "matrix"]
@@ -130,7 +131,7 @@ def _stepped(step: Stepped, units: UnitSystem) -> Line:
 
 
 def _tabled(step: Tabled, units: UnitSystem) -> Line:
-    columns = [[_text(v, symbol, units) for v in values] for symbol, values in step.columns]
+    columns = [alike(values, SYMBOLS[symbol].kind, units) for symbol, values in step.columns]
     return Line(
         "table",
         step.words,
@@ -146,9 +147,11 @@ def _tabled(step: Tabled, units: UnitSystem) -> Line:
 
 
 def _matrix(step: Matrix, units: UnitSystem) -> Line:
-    def cell(value: float, kind: str | None) -> str:
-        return f"{value:.4g}".replace("-", "\u2212") if kind is None else present.text(value, kind, units)
-
+    columns = [
+        [f"{v:.4g}".replace("-", "\u2212") for v in values] if kind is None else alike(values, kind, units)
+        for kind, values in zip(step.kinds, zip(*(row for _, row in step.rows), strict=True), strict=True)
+    ]
+    names = [name for name, _ in step.rows]
     return Line(
         "matrix",
         step.words,
@@ -156,6 +159,6 @@ def _matrix(step: Matrix, units: UnitSystem) -> Line:
         source=step.ref,
         grid=Grid(
             tuple(Expression.plain(h) for h in ("", *step.heads)),
-            tuple((name, *(cell(v, k) for v, k in zip(values, step.kinds, strict=True))) for name, values in step.rows),
+            tuple(zip(names, *columns, strict=True)),
         ),
     )

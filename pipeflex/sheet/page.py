@@ -147,9 +147,10 @@ class View:
         self.serious = tuple(r.words(units) for r in said if r.serious)
         self.remarks = tuple(r.words(units) for r in said if not r.serious)
         self.checks = results.checks(outcome, units)
-        self.loads = results.loads(outcome)
+        self.loads = results.loads(outcome, units)
+        self.every_load = results.every_load(outcome, units)
         self.load_terms = results.load_terms(outcome, units)
-        self.movements = results.movements(outcome)
+        self.movements = results.movements(outcome, units)
         self.rungs = results.rungs(sheet.ladder, outcome, units) if sheet.ladder else ()
         self.turns = results.turns(sheet.turns, units)
         self.cautions = sources.CAUTIONS

@@ -10,6 +10,7 @@ from pipeflex import present
 from pipeflex.model.outcome import Check, Ladder, Load, Outcome, Turn
 from pipeflex.model.words import Judgement
 from pipeflex.present import UNIT_SYSTEMS, UnitSystem
+from pipeflex.sheet.numbers import alike
 
 _NOTHING = "\u2013"
 
@@ -48,7 +49,7 @@ def _check(check: Check, units: UnitSystem) -> CheckRow:
 
 @dataclass(frozen=True, slots=True)
 class LoadRow:
-    """One load in one state: direction in words, and thermal part, friction, weight and sum in each unit system.
+    """The greatest of one load: direction in words, and thermal part, friction, weight and sum in each unit system.
 
     The parts are counted along the direction of the sum.
     """
@@ -57,24 +58,53 @@ class LoadRow:
     direction: str
     state: str
     parts: tuple[tuple[str, ...], ...]
-    greatest: bool
 
 
-def loads(outcome: Outcome) -> tuple[LoadRow, ...]:
-    """All loads of a single row in every state, the greatest of each marked."""
-    return tuple(row for load in outcome.loads for row in _load(load))
+@dataclass(frozen=True, slots=True)
+class LoadStates:
+    """One load in every state: thermal part, friction, weight and sum, positive as the heading says."""
+
+    heading: str
+    states: tuple[tuple[str, ...], ...]
 
 
-def _load(load: Load) -> list[LoadRow]:
-    worst = int(load.worst)
-    columns = np.stack([np.atleast_1d(v) for v in (load.thermal, load.friction, load.weight, load.total)], axis=1)
-    rows = []
-    for i, (state, numbers) in enumerate(zip(load.states, columns, strict=True)):
-        total = float(numbers[-1])
-        signed = numbers * (-1.0 if total < 0 else 1.0)
-        parts = tuple(tuple(present.text(float(v), load.kind, u) for v in signed) for u in UNIT_SYSTEMS)
-        rows.append(LoadRow(load.point, f"{load.name}, {load.toward(total)}", state, parts, i == worst))
-    return rows
+def loads(outcome: Outcome, units: UnitSystem = "metric") -> tuple[LoadRow, ...]:
+    """The greatest of every load of a single row."""
+    return tuple(_greatest(load, units) for load in outcome.loads)
+
+
+def _both(units: UnitSystem) -> tuple[UnitSystem, ...]:
+    """Both unit systems, that of the sheet first."""
+    return (units, *(u for u in UNIT_SYSTEMS if u != units))
+
+
+def _columns(load: Load) -> np.ndarray:
+    """Thermal part, friction, weight and sum, (states, 4)."""
+    return np.stack([np.atleast_1d(v) for v in (load.thermal, load.friction, load.weight, load.total)], axis=1)
+
+
+def _greatest(load: Load, units: UnitSystem) -> LoadRow:
+    i = int(load.worst)
+    numbers = _columns(load)[i]
+    total = float(numbers[-1])
+    signed = [float(v) for v in numbers * (-1.0 if total < 0 else 1.0)]
+    parts = tuple(tuple(alike(signed, load.kind, u)) for u in _both(units))
+    return LoadRow(load.point, f"{load.name}, {load.toward(total)}", load.states[i], parts)
+
+
+def every_load(outcome: Outcome, units: UnitSystem = "metric") -> tuple[LoadStates, ...]:
+    """Every load of a single row in every state; one line where all states are alike."""
+    return tuple(_in_states(load, units) for load in outcome.loads)
+
+
+def _in_states(load: Load, units: UnitSystem) -> LoadStates:
+    numbers = _columns(load)
+    flat = alike([float(v) for v in numbers.ravel()], load.kind, units)
+    rows = [tuple(flat[4 * i : 4 * i + 4]) for i in range(len(numbers))]
+    heading = f"{load.point}, {load.name}, positive {load.positive}"
+    if len(set(rows)) == 1:
+        return LoadStates(heading, (("every state", *rows[0]),))
+    return LoadStates(heading, tuple((state, *row) for state, row in zip(load.states, rows, strict=True)))
 
 
 def load_terms(outcome: Outcome, units: UnitSystem = "metric") -> str:
@@ -96,14 +126,14 @@ class MovementRow:
     values: tuple[str, ...]
 
 
-def movements(outcome: Outcome) -> tuple[MovementRow, ...]:
+def movements(outcome: Outcome, units: UnitSystem = "metric") -> tuple[MovementRow, ...]:
     """The greatest movement of each point of a single row."""
     rows = []
     for m in outcome.movements:
         values = np.atleast_1d(m.value)
         i = int(np.abs(values).argmax())
         value = float(values[i])
-        texts = tuple(present.text(abs(value), "movement", u) for u in UNIT_SYSTEMS)
+        texts = tuple(present.text(abs(value), "movement", u) for u in _both(units))
         rows.append(MovementRow(m.point, m.positive if value >= 0 else m.negative, m.states[i], texts))
     return tuple(rows)
 

@@ -15,17 +15,16 @@ from pipeflex.sheet.drawing import marks, overlays
 from pipeflex.sheet.drawing.board import Board, moved, square_to, unit_between
 from pipeflex.sheet.drawing.describe import described, length_text
 from pipeflex.sheet.drawing.dimensions import Dimension, place_dimensions
-from pipeflex.sheet.drawing.parts import HEAVY, SMALL, TEXT, THIN, XY, Label, Scene, shortened, text_width
+from pipeflex.sheet.drawing.parts import HEAVY, SMALL, THIN, XY, Scene, shortened, text_width
 from pipeflex.sheet.drawing.run import VIEWS, DrawnRun, drawn_run, view_matrix
 from pipeflex.sheet.drawing.standing import standing
+from pipeflex.sheet.drawing.strip import strip
 
 __all__ = ["VIEWS", "Scene", "scene"]
 
 _LONGEST = 22
 _COVER_SHOWN = (1.0, 4.5)
 """The outside of the insulation is drawn where it stands so far from the centreline on paper [mm]."""
-_ROOM_SHOWN = 1.8
-"""A room up to so many times the leg is drawn; a greater one is only named."""
 
 
 def scene(
@@ -44,7 +43,7 @@ def scene(
     ----------
     view : "plan", "elevation" or "isometric". viewpoint : 0 to 3, of the isometric.
     focus : path of the field whose dimension is drawn strong ("layout.sizes.leg").
-    width, height : of the paper [mm], at least 110 by 70.
+    width, height : of the paper [mm], at least 120 by 75.
     """
     if view not in VIEWS:
         raise ValueError(f"view {view!r}: one of {', '.join(VIEWS)}")
@@ -65,7 +64,7 @@ def scene(
     _supports(board, run, layout, clear)
     times = overlays.hot_shape(board, run, outcome)
     room = _room(board, run, outcome, view)
-    _strip(board, run, outcome, units, view, times)
+    strip(board, run, outcome, units, view, times)
     _directions(board, run, layout)
     if band is not None:
         overlays.flags(board, *band)
@@ -90,21 +89,13 @@ def scene(
 def _laid_out(outcome: Outcome, units: UnitSystem, view: str, viewpoint: int, width: float, height: float) -> DrawnRun:
     layout = outcome.design.layout
     inner = (18.0, 18.0, width - 36.0, height - 18.0 - 31.0)
-    room = _drawn_room(outcome)
+    room = overlays.drawn_room(outcome)
     extra = None if room is None else np.array([[0.0, room, 0.0]])
     stub = 0.22 * width
     plan = drawn_run(layout, units, view_matrix("plan", 0), inner, stub, extra)
     if view == "plan":
         return plan
     return drawn_run(layout, units, view_matrix(view, viewpoint), inner, stub, coarser=plan.scale)
-
-
-def _drawn_room(outcome: Outcome) -> float | None:
-    """The room [m] if it is that of a loop and near enough to be drawn."""
-    layout, room = outcome.design.layout, float(outcome.design.limits.room)
-    if not layout.shape.endswith("U") or not room <= _ROOM_SHOWN * float(layout.sizes["leg"]):
-        return None
-    return room
 
 
 def _pipe(board: Board, run: DrawnRun, covered: float) -> None:
@@ -173,7 +164,7 @@ def _supports(board: Board, run: DrawnRun, layout: Layout, clear: float) -> None
 
 
 def _room(board: Board, run: DrawnRun, outcome: Outcome, view: str) -> tuple[XY, XY] | None:
-    room = _drawn_room(outcome)
+    room = overlays.drawn_room(outcome)
     return None if view != "plan" or room is None else overlays.room_edge(board, run, room)
 
 
@@ -190,46 +181,6 @@ def _directions(board: Board, run: DrawnRun, layout: Layout) -> None:
     side = 12.0 + max(across, default=0.0)
     columns = [board.width - side + i * (2 * side - board.width) / 8 for i in range(9)]
     marks.axes(board, ((x, y) for y in (14.0, 18.0, board.height - 22.0) for x in columns), arms)
-
-
-def _strip(board: Board, run: DrawnRun, outcome: Outcome, units: UnitSystem, view: str, times: int | None) -> None:
-    """Title above; below it scale bar, marks used, and what holds for the whole drawing."""
-    layout = outcome.design.layout
-    title = f"{view[0].upper()}{view[1:]}, {run.scale_text}"
-    board.write(Label((2.0, 3.6), title, size=TEXT, anchor="start", bold=True))
-    if any(leg.broken for leg in run.legs):
-        x = 2.0 + text_width(title, TEXT) * 1.1 + 3.0
-        board.write(Label((x, 3.6), "long straights broken", "ink", SMALL, "start"))
-    y = board.height - 8.6
-    x = 2.0
-    kinds = dict.fromkeys(kind for kind, *_ in standing(layout))
-    for kind in kinds:
-        at = (x + 3.0, y)
-        board.draw(((x, y), (x + 6.0, y)), weight=HEAVY, keep="solid", clear=1.2)
-        marks.MARKS[kind](board, at, (1.0, 0.0), 1.6)
-        board.write(Label((x + 7.5, y), kind, "ink", SMALL, "start"))
-        x += 11.0 + text_width(kind, SMALL)
-    if times is not None:
-        board.draw(((x, y), (x + 7.0, y)), "heat", 0.5, (2.2, 1.1), keep="solid", clear=1.0)
-        words = f"hot shape × {times}"
-        board.write(Label((x + 8.5, y), words, "ink", SMALL, "start"))
-        x += 12.0 + text_width(words, SMALL)
-    if any(a.key == overlays.RIBBON for a in outcome.along):
-        board.fill(((x, y), (x, y - 1.2), (x + 7.0, y - 2.0), (x + 7.0, y)), "ribbon", 0.45, keep="solid")
-        board.draw(((x, y - 1.6), (x + 7.0, y - 1.6)), "ribbon", THIN, keep="")
-        board.write(Label((x + 8.5, y), "ratio S_E/S_A, line at 1", "ink", SMALL, "start"))
-    y = board.height - 2.9
-    end = marks.scale_bar(board, (2.0, y), run.scale, units)
-    notes = [f"lengths in {present.display('length', units).unit}"]
-    radii = {round(r, 9) for r in run.radii if r > 0}
-    if len(radii) == 1:
-        notes.append(f"bends R {present.text(radii.pop(), 'pipe dimension', units, 0 if units == 'metric' else 1)}")
-    if overlays.growth(outcome):
-        notes.append("arrows: growth, installed to hottest")
-    room = float(outcome.design.limits.room)
-    if math.isfinite(room) and _drawn_room(outcome) is None and layout.shape.endswith("U"):
-        notes.append(f"room {present.text(room, 'length', units)}")
-    board.write(Label((end + 20.0, y), "; ".join(notes), "ink", SMALL, "start"))
 
 
 def _letters(board: Board, run: DrawnRun, layout: Layout, clear: float) -> None:
@@ -321,22 +272,17 @@ def leg_paths(layout: Layout) -> list[str | None]:
 
 
 def _support_names(board: Board, run: DrawnRun, layout: Layout, units: UnitSystem, clear: float) -> None:
-    """Names of supports, and the gap of the first guide that has one and of every named support."""
-    gap_said = False
+    """Names of supports, with the gap of those that have one."""
     for kind, name, leg, distance, gap in standing(layout):
         place = run.legs[leg].place(distance)
         u = run.direction(run.legs[leg].unit)
-        said = gap > 0 and kind == "guide" and (bool(name) or not gap_said)
-        if place is None or u == (0.0, 0.0) or not (name or said):
+        if not name or place is None or u == (0.0, 0.0):
             continue
-        words = [shortened(name, 14)] if name else []
-        if said:
-            words.append(f"gap {present.text(gap, 'movement', units)}")
-            gap_said = True
+        said = f", gap {present.text(gap, 'movement', units)}" if gap > 0 and kind == "guide" else ""
         n = marks.under(u)
         board.beside(
             run.paper(place),
-            ", ".join(words),
+            shortened(name, 14) + said,
             first=(-n[0], -n[1]),
             size=SMALL,
             distances=[clear + d for d in (2.8, 4.7, 6.7, 9.2, 12.2)],

@@ -38,7 +38,7 @@ def as_text(view: "View") -> str:
         *(line for text in view.remarks for line in _wrapped(f"- {text}", 2)),
         *_section("Loads"),
         *_wrapped(view.load_terms),
-        *_loads([r for r in view.loads if r.greatest]),
+        *_loads(view.loads),
         *_columns([(m.point, m.direction, m.state, f"{m.values[0]} ({m.values[1]})") for m in view.movements],
                   (24, 20, 26, 26)),
         *_ladder(view),

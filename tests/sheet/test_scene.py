@@ -85,6 +85,16 @@ def test_labels_neither_overlap_nor_leave_the_paper_nor_lie_on_the_pipe(name, un
 
 
 @pytest.mark.parametrize("name", LINES)
+def test_labels_stay_apart_on_small_paper(name):
+    for view in ("plan", "isometric"):
+        drawn = scene(answered(LINES[name]), view=view, width=125.0, height=82.0)
+        for one, other in itertools.combinations(drawn.labels, 2):
+            assert not any(inside(p, other) for p in grid(one)), (view, one, other)
+        for label in drawn.labels:
+            assert all(0 <= x <= drawn.width and 0 <= y <= drawn.height for x, y in grid(label)), (view, label)
+
+
+@pytest.mark.parametrize("name", LINES)
 def test_everything_drawn_is_on_the_paper(name):
     for view, viewpoint in VIEWS:
         drawn = scene(answered(LINES[name]), view=view, viewpoint=viewpoint)

@@ -16,7 +16,8 @@ from pipeflex.model.words import Origin, Verdict
 from pipeflex.sheet import Sheet, read_design
 from pipeflex.sheet.headline import holding_side
 from pipeflex.sheet.html import css_string
-from pipeflex.sheet.inputs import exact, inputs
+from pipeflex.sheet.inputs import inputs
+from pipeflex.sheet.numbers import alike, exact
 from tests.sheet.lines import NASTY, SIZES, answered, line, sheet
 
 DESIGN = "# ünï\n[title]\nnotes = '''</pre><b>&amp; &lt;\"'''\r\n\ttab, 33 bar g sat, 17'-2\"\n\n"
@@ -139,7 +140,7 @@ def test_loads_say_what_they_are_in_both_unit_systems(whole):
 def test_parts_of_a_load_add_up_along_its_direction():
     made = sheet(line(rest_spacing=7.0))
     load = next(v for v in made.outcome.loads if v.kind == "force")
-    row = next(r for r in made.view.loads if r.greatest and r.point == load.point)
+    row = next(r for r in made.view.loads if r.point == load.point)
     thermal, friction, weight, total = (float(t.split("\u00a0")[0].replace("\u2212", "-")) for t in row.parts[0])
     assert thermal + friction + weight == pytest.approx(total, abs=0.02)
     assert total == pytest.approx(abs(float(load.greatest())) / 1e3, abs=0.006)
@@ -245,6 +246,18 @@ def test_inputs_show_the_decimals_they_have():
     assert exact(0.219075, "pipe dimension", "metric") == "219.075\u00a0mm"
     assert exact(5.125, "length", "metric") == "5.125\u00a0m"
     assert exact(5.1, "length", "us") == "16.73\u00a0ft"
+
+
+def test_numbers_beside_each_other_have_the_same_decimals():
+    assert alike([13.4e3, 1e-9, -5e3], "force") == ["13.40\u00a0kN", "0.00\u00a0kN", "\u22125.00\u00a0kN"]
+    assert alike([0.0123e3, 0.5], "force") == ["0.0123\u00a0kN", "0.0005\u00a0kN"]
+
+
+def test_every_state_of_every_load_is_on_the_sheet():
+    made = sheet(line(rest_spacing=7.0))
+    assert len(made.view.every_load) == len(made.outcome.loads)
+    for load, printed in zip(made.outcome.loads, made.view.every_load, strict=True):
+        assert [row[0] for row in printed.states] in (list(load.states), ["every state"])
 
 
 def test_tables_of_the_sheet_name_every_value_read():

@@ -21,7 +21,7 @@ def described(outcome: Outcome, units: UnitSystem, view: str, scale: str) -> str
     """Shape, sizes, ends, supports, and where the range is greatest."""
     layout = outcome.design.layout
     title = SHAPES[layout.shape].title
-    words = [f"{view[0].upper()}{view[1:]} of a {title}, {scale}"]
+    words = [f"{view[0].upper()}{view[1:]}, {scale}: {title}"]
     if layout.shape == "points":
         lengths = layout.leg_lengths()[:, 0]
         listed = ", ".join(present.text(float(v), "length", units) for v in lengths[:12])

@@ -5,7 +5,7 @@ from collections.abc import Iterable, Sequence
 
 from pipeflex.present import UnitSystem, display, number
 from pipeflex.sheet.drawing.board import Board, moved, square_to
-from pipeflex.sheet.drawing.parts import HEAVY, MEDIUM, SMALL, THIN, XY, Anchor, Label
+from pipeflex.sheet.drawing.parts import HEAVY, MEDIUM, SMALL, THIN, XY, Anchor, Label, text_width
 
 _BAR = 5.0
 _GROUND = 2.4
@@ -135,7 +135,7 @@ def _axis_word(at: XY, direction: XY, word: str) -> Label:
 
 
 def scale_bar(board: Board, left: XY, scale: int, units: UnitSystem) -> float:
-    """A bar of a round length with its two halves; returns where it ends."""
+    """A bar of a round length with its two halves; returns where its text ends."""
     factor = float(display("length", units).factor)
     most = 34.0 * scale / 1000 / factor
     step = 10.0 ** math.floor(math.log10(most))
@@ -152,4 +152,4 @@ def scale_bar(board: Board, left: XY, scale: int, units: UnitSystem) -> float:
     decimals = 0 if amount >= 1 else 1 if amount >= 0.1 else 2
     text = f"{number(amount * factor, 'length', units, decimals)} {unit}"
     board.write(Label((x + long + 1.5, y), text, size=SMALL, anchor="start"))
-    return x + long
+    return x + long + 1.5 + text_width(text, SMALL)

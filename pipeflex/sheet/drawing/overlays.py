@@ -12,7 +12,7 @@ from pipeflex.model.outcome import Along, Movement, Outcome, Shape
 from pipeflex.present import UnitSystem
 from pipeflex.sheet.drawing.board import Board, moved, square_to, unit_between
 from pipeflex.sheet.drawing.marks import under
-from pipeflex.sheet.drawing.parts import MEDIUM, SMALL, THIN, XY, Anchor, Label
+from pipeflex.sheet.drawing.parts import MEDIUM, SMALL, TEXT, THIN, XY, Anchor, Label
 from pipeflex.sheet.drawing.run import DrawnRun, Floats
 
 RIBBON: Final = "ratio"
@@ -23,6 +23,8 @@ _AT_ONE = 4.0
 _MOST = 2.0
 """Thickness stops growing at this ratio; the flag says the number."""
 _HOT_REACH = 9.0
+_ROOM_SHOWN = 1.8
+"""A room up to so many times the leg is drawn; a greater one is only named."""
 _MAGNIFICATIONS = (1, 2, 5, 10, 20, 50, 100, 200, 500)
 
 
@@ -147,11 +149,13 @@ def flags(board: Board, title: str, value: Floats, feet: Feet) -> None:
         top = moved(foot, n, _thick(float(value[i])))
         if any(math.dist(top, p) < 9 for p in placed):
             continue
+        placed.append(top)
         text = present.percent(float(value[i]))
         if board.beside(top, text, first=n, distances=(3.4, 5.0, 7.0, 9.5, 12.5), bold=bool(value[i] > 1), spread=2):
-            board.draw((foot, moved(top, n, 1.2)), "ink", THIN, keep="")
+            name = board.labels[-1].at
+            reach = max(1.2, math.dist(top, name) - 0.8 * TEXT)
+            board.draw((foot, top, moved(top, unit_between(top, name), reach)), keep="")
             board.spot(top, f"{title}: {text}")
-            placed.append(top)
 
 
 def hot_shape(board: Board, run: DrawnRun, outcome: Outcome) -> int | None:
@@ -268,6 +272,14 @@ def _growth_arrow(board: Board, corner: XY, u: XY, grows: bool, text: str, clear
                 board.spot(tip, f"growth {text}, installed to hottest")
                 return True
     return False
+
+
+def drawn_room(outcome: Outcome) -> float | None:
+    """The room [m] if it is that of a loop and near enough to be drawn."""
+    layout, room = outcome.design.layout, float(outcome.design.limits.room)
+    if not layout.shape.endswith("U") or not room <= _ROOM_SHOWN * float(layout.sizes["leg"]):
+        return None
+    return room
 
 
 def room_edge(board: Board, run: DrawnRun, room: float) -> tuple[XY, XY] | None:
