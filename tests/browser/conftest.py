@@ -13,7 +13,8 @@ import pytest
 if TYPE_CHECKING:
     from playwright.sync_api import Browser
 
-    from .harness import Lab, Server
+    from .harness import Lab
+    from .server import Server
 
 
 def _without(reason: str) -> None:
@@ -44,7 +45,7 @@ def browser() -> Iterator[Browser]:
 @pytest.fixture(scope="session")
 def server(browser: Browser, tmp_path_factory: pytest.TempPathFactory) -> Iterator[Server]:
     """A JupyterLab of our own; asked for after the browser, so that a skip costs nothing."""
-    from .harness import Server
+    from .server import Server
 
     running = Server(tmp_path_factory.mktemp("jupyter"))
     yield running

@@ -11,17 +11,10 @@ from __future__ import annotations
 
 import contextlib
 import json
-import os
 import re
-import secrets
 import shutil
-import signal
-import socket
 import statistics
-import subprocess
-import sys
 import time
-import urllib.request
 from collections.abc import Callable, Iterable
 from dataclasses import dataclass, field
 from pathlib import Path
@@ -31,6 +24,9 @@ import nbformat
 from playwright.sync_api import Browser, Locator, Page, Route
 from playwright.sync_api import TimeoutError as Overdue
 
+from .probes import CELLS_JS, PROBE_JS, SPY_JS
+from .server import Server
+
 CHROMIUM_ARGS = [
     "--no-sandbox",
     "--disable-dev-shm-usage",
@@ -38,77 +34,9 @@ CHROMIUM_ARGS = [
     "--force-color-profile=srgb",
     "--enable-precise-memory-info",
 ]
-ROOT = Path(__file__).resolve().parents[2]
-
-# One probe a page: `arm` waits for the first user event, then follows the changes inside `watch`.
-PROBE_JS = r"""
-(() => {
-  if (window.__probe) return;
-  const P = window.__probe = {};
-  const EVENTS = ['keydown', 'pointerdown', 'input', 'change', 'click'];
-  P.arm = watch => {
-    P.t0 = P.first = P.last = P.paint = null;
-    const begin = () => { P.t0 ??= performance.now(); };
-    EVENTS.forEach(n => window.addEventListener(n, begin, {capture: true}));
-    const element = n => n.nodeType === 1 ? n : n.parentElement;
-    const touches = m => element(m.target)?.closest(watch) ||
-      [...m.addedNodes].some(n => n.nodeType === 1 && (n.matches(watch) || n.querySelector(watch)));
-    const observer = new MutationObserver(list => {
-      if (P.t0 === null || !list.some(touches)) return;
-      P.last = performance.now();
-      P.first ??= P.last;
-      requestAnimationFrame(() => {                 // the frame that shows the change ...
-        const after = new MessageChannel();         // ... and the first task after it was painted
-        after.port1.onmessage = () => { P.paint = performance.now(); };
-        after.port2.postMessage(0);
-      });
-    });
-    observer.observe(document.body, {subtree: true, childList: true, attributes: true, characterData: true});
-    P.stop = () => {
-      observer.disconnect();
-      EVENTS.forEach(n => window.removeEventListener(n, begin, {capture: true}));
-      return P.paint === null ? null : P.paint - P.t0;
-    };
-  };
-  P.quiet = ms => P.last !== null && P.paint >= P.last && performance.now() - P.last > ms;
-})();
-"""
-
-# Errors that the kernel publishes outside any cell, that is, from widget callbacks.
-SPY_JS = r"""
-() => {
-  const context = window.jupyterapp?.shell.currentWidget?.sessionContext;
-  if (window.__spy) return true;
-  if (!context?.session?.kernel) return false;
-  const spy = window.__spy = {errors: [], stderr: []};
-  const hook = kernel => kernel.iopubMessage.connect((_, m) => {
-    const parent = m.parent_header?.msg_type, text = m.content;
-    if (m.header.msg_type === 'error' && parent !== 'execute_request')
-      spy.errors.push(`${text.ename}: ${text.evalue}`);
-    if (m.header.msg_type === 'stream' && text.name === 'stderr' && parent !== 'execute_request')
-      spy.stderr.push(text.text);
-  });
-  hook(context.session.kernel);
-  context.kernelChanged.connect((_, change) => { if (change.newValue) hook(change.newValue); });
-  return true;
-}
-"""
-
-CELLS_JS = r"""
-() => window.jupyterapp.shell.currentWidget.content.widgets.map((cell, i) => ({
-  i, id: cell.model.id, type: cell.model.type, count: cell.model.executionCount ?? null,
-  source: cell.model.sharedModel.getSource(), outputs: cell.model.outputs?.toJSON() ?? []}))
-"""
 
 HELD_JS = "(e => e.matches('input, select') ? e.value : e.innerText ?? e.textContent)"
 NOTEBOOK_JS = "const panel = window.jupyterapp.shell.currentWidget, notebook = panel.content;"
-
-
-def free_port() -> int:
-    """A free TCP port of the loopback interface."""
-    with contextlib.closing(socket.socket()) as s:
-        s.bind(("127.0.0.1", 0))
-        return int(s.getsockname()[1])
 
 
 def write_notebook(path: Path, *cells: str) -> Path:
@@ -117,85 +45,6 @@ def write_notebook(path: Path, *cells: str) -> Path:
     notebook.metadata.kernelspec = {"name": "python3", "display_name": "Python 3", "language": "python"}
     nbformat.write(notebook, path)
     return path
-
-
-SETTINGS = {
-    # windowing off: every cell is in the page, also those out of sight
-    "@jupyterlab/notebook-extension:tracker": {"windowingMode": "none"},
-    "@jupyterlab/apputils-extension:notification": {"fetchNews": "false", "checkForUpdates": False},
-    "@jupyterlab/docmanager-extension:plugin": {"autosave": False},
-}
-
-
-class Server:
-    """A JupyterLab server with a private configuration; notebooks live in ``root``."""
-
-    def __init__(self, folder: Path, environment: dict[str, str] | None = None) -> None:
-        self.root = folder / "notebooks"
-        self.token, port = secrets.token_hex(16), free_port()
-        self.base = f"http://127.0.0.1:{port}"
-        places = {name: folder / name for name in ("config", "data", "runtime", "settings", "workspaces", "ipython")}
-        for place in (self.root, *places.values()):
-            place.mkdir(parents=True)
-        self.settings = places["settings"]
-        for plugin, values in SETTINGS.items():
-            self.configure(plugin, values)
-        variables = {
-            **os.environ,
-            "JUPYTER_CONFIG_DIR": str(places["config"]),
-            "JUPYTER_DATA_DIR": str(places["data"]),
-            "JUPYTER_RUNTIME_DIR": str(places["runtime"]),
-            "JUPYTERLAB_SETTINGS_DIR": str(places["settings"]),
-            "JUPYTERLAB_WORKSPACES_DIR": str(places["workspaces"]),
-            "IPYTHONDIR": str(places["ipython"]),
-            "JUPYTER_PLATFORM_DIRS": "1",
-            "PYTHONPATH": os.pathsep.join(filter(None, [str(ROOT), os.environ.get("PYTHONPATH", "")])),
-            **(environment or {}),
-        }
-        command = [
-            sys.executable, "-m", "jupyterlab", "--allow-root", "--expose-app-in-browser",
-            "--ServerApp.ip=127.0.0.1", f"--ServerApp.port={port}", "--ServerApp.port_retries=0",
-            f"--IdentityProvider.token={self.token}", "--ServerApp.open_browser=False",
-            f"--ServerApp.root_dir={self.root}", "--LabApp.news_url=None",
-        ]  # fmt: skip
-        self.log = (folder / "server.log").open("w")
-        self.process = subprocess.Popen(
-            command, cwd=self.root, env=variables, stdout=self.log, stderr=subprocess.STDOUT,
-            start_new_session=True,
-        )  # fmt: skip
-        try:
-            self._await()
-        except BaseException:
-            self.stop()
-            raise
-
-    def configure(self, plugin: str, values: dict[str, Any]) -> None:
-        """Write one plugin's settings; a page opened afterwards follows them."""
-        package, name = plugin.rsplit(":", 1)
-        path = self.settings / package / f"{name}.jupyterlab-settings"
-        path.parent.mkdir(parents=True, exist_ok=True)
-        path.write_text(json.dumps(values))
-
-    def _await(self, seconds: float = 90) -> None:
-        end = time.monotonic() + seconds
-        while time.monotonic() < end:
-            if self.process.poll() is not None:
-                raise RuntimeError(f"JupyterLab ended at once; its words are in {self.log.name}")
-            with contextlib.suppress(OSError):
-                urllib.request.urlopen(f"{self.base}/api/status?token={self.token}", timeout=2).close()
-                return
-            time.sleep(0.2)
-        raise TimeoutError("JupyterLab did not answer")
-
-    def stop(self) -> None:
-        """End the server, which ends its kernels."""
-        if self.process.poll() is None:
-            self.process.send_signal(signal.SIGTERM)
-            try:
-                self.process.wait(15)
-            except subprocess.TimeoutExpired:
-                self.process.kill()
-        self.log.close()
 
 
 @dataclass
@@ -387,13 +236,14 @@ class Lab:
         """Click the button of that name."""
         self.page.get_by_role("button", name=name, exact=True).first.click()
 
-    def expect(self, css: str, text: str, seconds: float = 10) -> None:
+    def expect(self, css: str, text: str, seconds: float = 20) -> None:
         """Fail unless an element of that selector comes to hold the text."""
         try:
             self.page.wait_for_function(
                 f"([css, text]) => [...document.querySelectorAll(css)].map({HELD_JS}).some(t => t.includes(text))",
                 arg=[css, text],
                 timeout=seconds * 1000,
+                polling=50,
             )
         except Overdue:
             held = self.page.eval_on_selector_all(css, f"all => all.map({HELD_JS})")

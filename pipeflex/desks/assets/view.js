@@ -4,6 +4,9 @@ const CONFIG = {
 };
 const FONT = '-apple-system, "Segoe UI", "Liberation Sans", Arial, sans-serif';
 
+// plotly looks what is under the pointer at most every 50 ms; what a quick hand clicked is known after that.
+const HOVER_MS = 60;
+
 // One plotly.js a page and version, whatever the number of pictures and of runs of their cell.
 const page = (window.__pipeflex_plotly__ ??= {loaded: {}, asking: null});
 
@@ -75,7 +78,7 @@ async function render({model, el}) {
   el.classList.add("pf-picture");
   el.append(mark, picture);
 
-  let Plotly = null, drawn = 0;                     // drawn: the width at which it was
+  let Plotly = null, under = null, drawn = 0;       // the mark under the pointer; the width drawn at
   const draw = () => {
     const width = drawn = Math.floor(el.clientWidth);
     if (!Plotly || !width) return;                  // out of sight: drawn when it comes to light
@@ -83,7 +86,10 @@ async function render({model, el}) {
     const layout = layoutOf(scene, width, model.get("height"));
     new Promise(resolve => {
       resolve(Plotly.react(picture, painted(scene.data ?? [], roles), painted(layout, roles), CONFIG));
-      if (first) picture.on("plotly_click", clicked);
+      if (!first) return;
+      picture.on("plotly_hover", ({points}) => { under = points[0]; });
+      picture.on("plotly_unhover", () => { under = null; });
+      picture.on("plotly_click", ({event}) => setTimeout(clicked, HOVER_MS, event));
     }).catch(failed);
   };
   const failed = error => {
@@ -91,12 +97,12 @@ async function render({model, el}) {
     mark.hidden = false;
     throw error;
   };
-  const clicked = ({points: [on] = [], event}) => {
-    // plotly reports where the pointer last rested; a quick hand clicks elsewhere
+  const clicked = event => {
+    if (!Plotly) return;
     const {left, top} = picture.querySelector(".nsewdrag").getBoundingClientRect();
     const {xaxis, yaxis} = picture._fullLayout;
     const at = {x: xaxis.p2d(event.clientX - left), y: yaxis.p2d(event.clientY - top)};
-    const met = {trace: on?.data.name ?? null, customdata: on?.customdata ?? null};
+    const met = {trace: under?.data.name ?? null, customdata: under?.customdata ?? null};
     model.set("clicked", {...at, ...met, count: (model.get("clicked").count ?? 0) + 1});
     model.save_changes();
   };
