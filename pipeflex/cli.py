@@ -1,4 +1,4 @@
-"""The command line: sheets and answers of design files, materials and sizes of the tables.
+"""The command line: sheets, answers and notebooks of design files, materials and sizes of the tables.
 
 Exit status: 0 computed, 1 a fault of the program or of the output, 2 bad input.
 """
@@ -89,6 +89,12 @@ def _parser() -> argparse.ArgumentParser:
     _add_display(demo)
     demo.set_defaults(run=_demo)
 
+    opening = commands.add_parser("open", help="copy a notebook and its design here, and open it in JupyterLab")
+    opening.add_argument("name", metavar="NAME", nargs="?", default="", help="of the notebook; the first by default")
+    opening.add_argument("--folder", metavar="FOLDER", default=".", help="where to copy to; this one by default")
+    opening.add_argument("--no-browser", action="store_true", help="print the address only")
+    opening.set_defaults(run=_open)
+
     materials = commands.add_parser("materials", help="list the materials of the tables")
     materials.add_argument("--code", metavar="KEY", default="B31.3-2018", help="edition with the allowable stresses")
     _add_units(materials)
@@ -147,6 +153,21 @@ def _demo(given: argparse.Namespace) -> None:
         f"Open the sheet in a browser and print it from there. Change the design in any editor, then:\n"
         f'    pipeflex sheet "{design}" -o "{page}" --overwrite'
     )
+
+
+def _open(given: argparse.Namespace) -> None:
+    from pipeflex.desks import opening
+
+    source = _shipped()
+    name = opening.chosen(given.name, source)
+    copied = opening.copy_into(name, source, Path(given.folder))
+    for path, new in copied:
+        print(f"{path}: {'copied' if new else 'is there already, left as it is'}")
+    lab = opening.Lab(copied[0].path)
+    browser = opening.has_screen() and not given.no_browser
+    print(f"{'Opening' if browser else 'Open in a browser:'} {lab.address}\nCtrl+C here ends JupyterLab.", flush=True)
+    if status := lab.run(browser):
+        raise OSError(0, f"ended with status {status}", "JupyterLab")
 
 
 def _materials(given: argparse.Namespace) -> None:

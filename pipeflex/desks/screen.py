@@ -206,11 +206,9 @@ class Screen(Desk):
 
     def _ipython_display_(self) -> None:
         display(self.box)  # type: ignore[no-untyped-call]
+        self.finish()
         self.copy = StaticCopy("Static copy of the picture, for readers without a kernel")
-        if self.answer is not None:
-            if not self.answer.whole:
-                self.finish()
-            self._show_copy()
+        self._show_copy()
 
     def __repr__(self) -> str:
         state = self.answer.outcome.verdict if self.answer is not None and self.sure else "no answer"
