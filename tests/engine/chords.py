@@ -21,7 +21,7 @@ class Bar:
     E: float
     G: float
     A: float
-    I: float  # noqa: E741
+    I: float
     J: float
     strain: float
     bow: float
@@ -120,9 +120,7 @@ def chord_model(case: dict, chords: int) -> Frame:
     return frame
 
 
-def _answers(
-    frame: Frame, moved: np.ndarray, on_nodes: np.ndarray, moments: np.ndarray
-) -> dict[str, np.ndarray]:
+def _answers(frame: Frame, moved: np.ndarray, on_nodes: np.ndarray, moments: np.ndarray) -> dict[str, np.ndarray]:
     """What is compared: forces and moments on ends and supports, moments and movements at the marks."""
     reaction = np.zeros_like(moved)
     for (node, axis), _ in frame.fixed.items():

@@ -47,15 +47,36 @@ def nps6():
 FRAMES = {
     "square U": (
         [(0, 0), (540, 0), (540, 120), (660, 120), (660, 0), (1200, 0)],
-        dict(F=1013.09644, F_x=1013.09644, M_a=20261.9288, M_b=20261.9288, M_max=101309.644, stretch=1010.4),
+        {
+            "F": 1013.09644,
+            "F_x": 1013.09644,
+            "M_a": 20261.9288,
+            "M_b": 20261.9288,
+            "M_max": 101309.644,
+            "stretch": 1010.4,
+        },
     ),
     "unequal L": (
         [(0, 0), (360, 0), (360, 180)],
-        dict(F=847.467792, F_x=810.477154, M_a=35120.6767, M_b=91854.0774, M_max=91854.0774, stretch=845.84),
+        {
+            "F": 847.467792,
+            "F_x": 810.477154,
+            "M_a": 35120.6767,
+            "M_b": 91854.0774,
+            "M_max": 91854.0774,
+            "stretch": 845.84,
+        },
     ),
     "Z": (
         [(0, 0), (300, 0), (300, 120), (480, 120)],
-        dict(F=1718.20084, F_x=1615.08027, M_a=70219.9084, M_b=17387.1475, M_max=105665.522, stretch=1711.4),
+        {
+            "F": 1718.20084,
+            "F_x": 1615.08027,
+            "M_a": 70219.9084,
+            "M_b": 17387.1475,
+            "M_max": 105665.522,
+            "stretch": 1711.4,
+        },
     ),
 }
 
@@ -204,9 +225,7 @@ def test_quarter_bend_tip_loaded():
         (line((0, 0, 0), (0, 0, radius), (radius, 0, radius)), True),
         (line((0, 0, 0), (radius, 0, 0), (radius, radius, 0)), False),
     ):
-        run = assemble(
-            corners, Section(NO_STRETCH, I), modulus=E, radius=radius, weights=[hang], ends=(End(), FREE)
-        )
+        run = assemble(corners, Section(NO_STRETCH, I), modulus=E, radius=radius, weights=[hang], ends=(End(), FREE))
         drop = -movements(linear(run, States(strain=0.0, weight=1.0)), (1.0,)).movement[0, 2, -1, 0]
         soft = np.pi / 4 / (E * I)
         if not in_plane:
@@ -214,16 +233,14 @@ def test_quarter_bend_tip_loaded():
         assert drop == pytest.approx(pull * radius**3 * soft, rel=1e-9)
 
 
-@pytest.mark.parametrize("ends, sag, moment", [("fixed", 1 / 384, 1 / 24), ("simple", 5 / 384, 1 / 8)])
+@pytest.mark.parametrize(("ends", "sag", "moment"), [("fixed", 1 / 384, 1 / 24), ("simple", 5 / 384, 1 / 8)])
 def test_sag_of_a_span(ends, sag, moment):
     length, weight = 8.0, 600.0
     pinned = End(stiffness=(np.inf,) * 4 + (0.0, 0.0))
     both = (End(), End()) if ends == "fixed" else (pinned, pinned)
     run = assemble(line((0, 0, 0), (length, 0, 0)), SECTION, modulus=E, weight=weight, ends=both)
     answer = linear(run, States(strain=0.0, weight=1.0))
-    assert -movements(answer, (0.5,)).movement[0, 2, 0, 0] == pytest.approx(
-        sag * weight * length**4 / (E * I)
-    )
+    assert -movements(answer, (0.5,)).movement[0, 2, 0, 0] == pytest.approx(sag * weight * length**4 / (E * I))
     middle = moments(answer)
     assert middle.fraction[0, 0, 0] == pytest.approx(0.5)
     assert middle.resultant()[0, 1, 0, 0] == pytest.approx(moment * weight * length**2)
@@ -285,9 +302,7 @@ def test_line_stop_is_an_exact_zero():
     run = assemble(line((0, 0, 0), (15, 0, 0), (15, 6, 0)), SECTION, modulus=E, radius=0.3, supports=[stop])
     answer = linear(run, States(strain=0.001))
     assert abs(support_movements(answer).movement[0, 0, 0, 0]) < 1e-15
-    assert answer.hold_force[0, 0, 0] == pytest.approx(
-        E * A * 0.001 - (-answer.wrench[0, 0, -1, 0]), rel=1e-9
-    )
+    assert answer.hold_force[0, 0, 0] == pytest.approx(E * A * 0.001 - (-answer.wrench[0, 0, -1, 0]), rel=1e-9)
 
 
 # contact and friction -------------------------------------------------------------------------------------------
@@ -295,12 +310,8 @@ def test_line_stop_is_an_exact_zero():
 
 def level_line(length, spacing, friction, last=FREE, **more):
     count = round(length / spacing)
-    rests = [
-        Support(leg=0, distance=spacing * (i + 1), holds=(REST,), friction=friction) for i in range(count)
-    ]
-    return assemble(
-        line((0, 0, 0), (length, 0, 0)), SECTION, modulus=E, supports=rests, ends=(End(), last), **more
-    )
+    rests = [Support(leg=0, distance=spacing * (i + 1), holds=(REST,), friction=friction) for i in range(count)]
+    return assemble(line((0, 0, 0), (length, 0, 0)), SECTION, modulus=E, supports=rests, ends=(End(), last), **more)
 
 
 HISTORY = np.array([0.0, 1.0, 0.0, 1.0])
@@ -398,9 +409,7 @@ def test_elastic_gap_closes():
     stop = Support(leg=0, distance=length, holds=(Hold(direction="along", gap=gap, stiffness=stiffness),))
     run = assemble(line((0, 0, 0), (length, 0, 0)), SECTION, modulus=E, supports=[stop], ends=(End(), FREE))
     found = settle(run, States(strain=np.array([0.0, 0.0010])))
-    assert found.answer.hold_force[1, 0, 0] == pytest.approx(
-        (0.010 - gap) / (length / E / A + 1 / stiffness), rel=1e-7
-    )
+    assert found.answer.hold_force[1, 0, 0] == pytest.approx((0.010 - gap) / (length / E / A + 1 / stiffness), rel=1e-7)
 
 
 def test_unguided_rest_is_a_disc_and_a_guided_one_a_box():
@@ -442,3 +451,15 @@ def test_guide_force_feeds_friction():
     assert on_it[1] == pytest.approx(side, rel=1e-6)
     assert on_it[0] == pytest.approx(0.3 * (side + abs(on_it[2])), rel=1e-6)
     assert np.abs(residual(found.answer)).max() < 1e-6 * side
+
+
+def test_lateral_is_level_and_square_to_a_skew_leg():
+    """A guide on a sloping, skew leg: its force has no part along the pipe and none upwards."""
+    corners = line((0, 0, 0), (6, 8, 2), (6, 15, 2))
+    guide = Support(leg=0, distance=4.0, holds=(Hold(),))
+    answer = linear(assemble(corners, SECTION, modulus=E, supports=[guide]), States(strain=0.002))
+    force = answer.support_force[0, :, 0, 0]
+    assert np.linalg.norm(force) > 1.0
+    assert force @ corners[:, 1] == pytest.approx(0.0, abs=1e-9 * np.linalg.norm(force))
+    assert force[2] == 0.0
+    assert force == pytest.approx(answer.hold_force[0, 0, 0] * np.array([-0.8, 0.6, 0.0]))

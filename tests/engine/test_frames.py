@@ -120,9 +120,7 @@ def by_engine(case: dict) -> tuple[dict[str, np.ndarray], np.ndarray]:
     def column(name):
         return np.array([[piece[name]] for piece in pieces])
 
-    placed = {
-        kind: [t for t in case["placed"] if t["kind"] == kind] for kind in ("support", "weight", "break")
-    }
+    placed = {kind: [t for t in case["placed"] if t["kind"] == kind] for kind in ("support", "weight", "break")}
     supports = [
         Support(
             leg=t["leg"],
@@ -140,9 +138,7 @@ def by_engine(case: dict) -> tuple[dict[str, np.ndarray], np.ndarray]:
         bend_factor=factor,
         weight=column("weight"),
         supports=supports,
-        weights=[
-            PointWeight(leg=t["leg"], distance=t["distance"], force=t["force"]) for t in placed["weight"]
-        ],
+        weights=[PointWeight(leg=t["leg"], distance=t["distance"], force=t["force"]) for t in placed["weight"]],
         breaks=[Break(leg=t["leg"], distance=t["distance"]) for t in placed["break"]],
         ends=(End(stiffness=case["end_a"]), End(stiffness=case["end_b"])),
     )

@@ -48,9 +48,7 @@ def any_run(seed: int, turned=None, shift=0.0, modulus=200e9, ends=None, mirrore
         way = turned @ rng.normal(size=3)
         stiffness = np.inf if rng.random() < 0.5 else 10 ** rng.uniform(4, 8)
         distance = size * rng.uniform(0.4, 0.6)
-        supports.append(
-            Support(leg=int(leg), distance=distance, holds=(Hold(direction=way, stiffness=stiffness),))
-        )
+        supports.append(Support(leg=int(leg), distance=distance, holds=(Hold(direction=way, stiffness=stiffness),)))
     run = assemble(
         turned @ corners + np.reshape(shift, (-1, 1)),
         Section(4e-3, 2e-5),
@@ -103,7 +101,7 @@ def test_movements_fit_at_the_far_end_and_at_rigid_holds(seed):
 @given(seeds)
 def test_reciprocity(seed):
     """Moving end A in one way and end B in another: each does the same work on the other's forces."""
-    run, states = any_run(seed)
+    run, _states = any_run(seed)
     rng = np.random.default_rng(seed)
     one, other = rng.normal(size=(2, 2, 1, 6, 1))
     first = linear(run, States(strain=0.0, movement_a=one[0], movement_b=one[1]))
@@ -175,9 +173,7 @@ def test_reversing_the_run_swaps_its_ends(seed):
     """Legs counted from the other end, ends with springs and free axes: the same forces."""
     rng = np.random.default_rng(seed)
     corners = np.array([[0, 9, 9, 9, 16], [0, 0, 5, 5, 7], [0, 0, 0, 4, 4.0]]) + rng.uniform(-1, 1, (3, 5))
-    stiff = np.where(
-        rng.random(6) < 0.3, 0.0, np.where(rng.random(6) < 0.5, np.inf, 10 ** rng.uniform(4, 8, 6))
-    )
+    stiff = np.where(rng.random(6) < 0.3, 0.0, np.where(rng.random(6) < 0.5, np.inf, 10 ** rng.uniform(4, 8, 6)))
     ends = (End(stiffness=stiff), End())
     lengths = np.linalg.norm(np.diff(corners, axis=1), axis=0)
     place, where, cut = rng.uniform(0.3, 0.7, 3)
@@ -247,9 +243,7 @@ def test_rows_equal_their_single_solves():
         for row in (0, 700, 1499):
             one = linear(build(slice(row, row + 1), lift), States(strain=0.002))
             assert whole.end_a[..., row] == pytest.approx(one.end_a[..., 0], rel=1e-12, abs=1e-8)
-            assert line.in_plane[..., row] == pytest.approx(
-                moments(one).in_plane[..., 0], rel=1e-11, abs=1e-7
-            )
+            assert line.in_plane[..., row] == pytest.approx(moments(one).in_plane[..., 0], rel=1e-11, abs=1e-7)
 
 
 def test_plane_run_equals_the_same_run_tilted():
@@ -258,9 +252,7 @@ def test_plane_run_equals_the_same_run_tilted():
     turn = a_turn(1)
 
     def build(by):
-        guide = Support(
-            leg=0, distance=6.0, holds=(Hold(direction=by @ [0, 1, 0]), Hold(direction=by @ [0, 0, 1]))
-        )
+        guide = Support(leg=0, distance=6.0, holds=(Hold(direction=by @ [0, 1, 0]), Hold(direction=by @ [0, 0, 1])))
         stop = Support(leg=2, distance=1.5, holds=(Hold(direction=by @ [1, 0, 0], stiffness=1e5),))
         return assemble(
             by @ corners, Section(4e-3, 2e-5), modulus=2e11, radius=0.4, bend_factor=6, supports=[guide, stop]

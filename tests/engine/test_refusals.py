@@ -28,7 +28,7 @@ def build(corners=L_RUN, section=PIPE, **more):
 
 
 @pytest.mark.parametrize(
-    "corners, words",
+    ("corners", "words"),
     [
         (np.array([[0, 8, 8, 8], [0, 0, 0, 5], [0, 0, 0, 0.0]]), "leg 2"),
         (np.array([[0, 4, 8], [0, 0, 0], [0, 0, 0.0]]), "corner 1"),
@@ -55,24 +55,24 @@ def test_radius_longer_than_the_end_leg():
 
 
 @pytest.mark.parametrize(
-    "more, words",
+    ("more", "words"),
     [
-        (dict(modulus=0.0), "modulus"),
-        (dict(modulus=np.nan), "modulus"),
-        (dict(section=Section(-1.0, 2e-5)), "section.area"),
-        (dict(section=Section(4e-3, np.inf)), "section.inertia"),
-        (dict(radius=-0.1), "radius"),
-        (dict(bend_factor=0.5), "bend_factor"),
-        (dict(weight=-1.0), "weight"),
-        (dict(weight=np.zeros((5, 1))), "weight"),
-        (dict(supports=[Support(holds=(Hold(),), tag="G1")]), "support G1"),
-        (dict(supports=[Support(leg=2, holds=(Hold(),), tag="G1")]), r"support G1\.leg"),
-        (dict(supports=[Support(bend=1, holds=(Hold(),), tag="G1")]), r"support G1\.bend"),
+        ({"modulus": 0.0}, "modulus"),
+        ({"modulus": np.nan}, "modulus"),
+        ({"section": Section(-1.0, 2e-5)}, "section.area"),
+        ({"section": Section(4e-3, np.inf)}, "section.inertia"),
+        ({"radius": -0.1}, "radius"),
+        ({"bend_factor": 0.5}, "bend_factor"),
+        ({"weight": -1.0}, "weight"),
+        ({"weight": np.zeros((5, 1))}, "weight"),
+        ({"supports": [Support(holds=(Hold(),), tag="G1")]}, "support G1"),
+        ({"supports": [Support(leg=2, holds=(Hold(),), tag="G1")]}, r"support G1\.leg"),
+        ({"supports": [Support(bend=1, holds=(Hold(),), tag="G1")]}, r"support G1\.bend"),
         (
-            dict(supports=[Support(leg=0, distance=7.9, holds=(Hold(),), tag="G1")], radius=0.3),
+            {"supports": [Support(leg=0, distance=7.9, holds=(Hold(),), tag="G1")], "radius": 0.3},
             r"support G1\.distance",
         ),
-        (dict(breaks=[Break(leg=0, distance=-1.0)]), r"break\.distance"),
+        ({"breaks": [Break(leg=0, distance=-1.0)]}, r"break\.distance"),
     ],
 )
 def test_bad_input(more, words):
@@ -98,9 +98,7 @@ def test_lateral_means_nothing_on_a_riser():
 
 @pytest.mark.parametrize("away", [0.0, 1e-13])
 def test_two_rigid_holds_at_one_place_in_one_direction(away):
-    guides = [
-        Support(leg=0, distance=3.0 + d, holds=(Hold(),), tag=tag) for tag, d in (("G1", 0), ("G2", away))
-    ]
+    guides = [Support(leg=0, distance=3.0 + d, holds=(Hold(),), tag=tag) for tag, d in (("G1", 0), ("G2", away))]
     with pytest.raises(UnstableLayoutError, match="support G2"):
         linear(build(supports=guides), HEAT)
 
@@ -133,11 +131,11 @@ def test_single_designs_only():
 
 
 @pytest.mark.parametrize(
-    "support, words",
+    ("support", "words"),
     [
-        (dict(holds=(Hold(gap=-0.001),)), "gap"),
-        (dict(holds=(Hold(),), friction=-0.1), "friction"),
-        (dict(holds=(Hold(),), friction=np.nan), "friction"),
+        ({"holds": (Hold(gap=-0.001),)}, "gap"),
+        ({"holds": (Hold(),), "friction": -0.1}, "friction"),
+        ({"holds": (Hold(),), "friction": np.nan}, "friction"),
     ],
 )
 def test_bad_contacts(support, words):

@@ -1,6 +1,6 @@
 """Speed of the beam engine: medians and ratios of one run, printed, never asserted.
 
-    python -m tests.speed.engine_bench
+python -m tests.speed.engine_bench
 """
 
 import time
@@ -160,9 +160,7 @@ def many_supports() -> None:
         corners = np.array([[0.0, 6.0 * count + 6.0, 6.0 * count + 6.0], [0, 0, 8.0], [0, 0, 0]])
 
         def work(guides: list[Support] = guides, corners: np.ndarray = corners) -> None:
-            run = assemble(
-                corners, Section(4e-3, 2e-5), modulus=2e11, radius=0.3, weight=400.0, supports=guides
-            )
+            run = assemble(corners, Section(4e-3, 2e-5), modulus=2e11, radius=0.3, weight=400.0, supports=guides)
             linear(run, States(strain=0.002, weight=1.0))
 
         took = median(work, 5 if count > 100 else 30)

@@ -58,9 +58,7 @@ class Balance:
     exact: bool
 
 
-def balance(
-    laws: Laws, stiffness: Array, closed: Array, slid: Array, limit: Array, start: Balance
-) -> Balance:
+def balance(laws: Laws, stiffness: Array, closed: Array, slid: Array, limit: Array, start: Balance) -> Balance:
     """Solve one step.
 
     Parameters

@@ -85,12 +85,8 @@ def elements(run: Run, rows: slice) -> Elements:
     bending = run.bending[plan.piece, rows]
     if len(bent):
         bending[bent] /= run.factor[which, rows]
-    prop = Properties(
-        run.axial[plan.piece, rows], bending, run.torsion[plan.piece, rows], run.weight[plan.piece, rows]
-    )
-    made = Elements(
-        rows, Shape(start, tangent, inward, length, radius, angle), prop, straight, bent, corners[:, -1]
-    )
+    prop = Properties(run.axial[plan.piece, rows], bending, run.torsion[plan.piece, rows], run.weight[plan.piece, rows])
+    made = Elements(rows, Shape(start, tangent, inward, length, radius, angle), prop, straight, bent, corners[:, -1])
     if run.rows <= CHUNK:
         run.cache["elements"] = made
     return made
@@ -102,10 +98,7 @@ def _beside(run: Run, leg: Indices, rows: slice) -> Array:
         one = run.along[:, leg, rows]
         flat = np.stack([-one[1], one[0], np.zeros_like(one[0])])
         size = np.sqrt(dot(flat, flat))
-        side = np.where(
-            size > _VERTICAL, flat / np.where(size > _VERTICAL, size, 1.0), [[[1.0]], [[0.0]], [[0.0]]]
-        )
-        return side
+        return np.where(size > _VERTICAL, flat / np.where(size > _VERTICAL, size, 1.0), [[[1.0]], [[0.0]], [[0.0]]])
     corner = np.maximum(leg - 1, 0)
     inward, before = run.inward[:, corner, rows], run.along[:, corner, rows]
     angle = run.angle[corner, rows]
@@ -185,15 +178,11 @@ def support_axes(run: Run, made: Elements) -> tuple[Array, Array]:
     """Unit vectors along the pipe and lateral to it at every support, (3, support, row); lateral is 0 on risers."""
     station = np.minimum(run.plan.support_station, len(made.shape.length) - 1)
     along = made.shape.along[:, station]
-    square = np.array([s.bend is not None for s in run.supports]) & (made.shape.angle[station] == 0).all(
-        axis=1
-    )
+    square = np.array([s.bend is not None for s in run.supports]) & (made.shape.angle[station] == 0).all(axis=1)
     for i in np.flatnonzero(square).tolist():
         bend = run.supports[i].bend
         half = 0.5 * run.angle[bend, made.rows]
-        along[:, i] = (
-            np.cos(half) * run.along[:, bend, made.rows] + np.sin(half) * run.inward[:, bend, made.rows]
-        )
+        along[:, i] = np.cos(half) * run.along[:, bend, made.rows] + np.sin(half) * run.inward[:, bend, made.rows]
     flat = np.array([-along[1], along[0], np.zeros_like(along[0])])
     size = np.sqrt(dot(flat, flat))
     lateral = np.where(size > _VERTICAL, flat / np.where(size > _VERTICAL, size, 1.0), 0.0)

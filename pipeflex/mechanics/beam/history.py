@@ -173,10 +173,7 @@ def _model(run: Run, made: Elements, held: Holds) -> _Model:
     lifts = np.array([h.lifts for h in given], dtype=bool)
     refuse(
         InputError,
-        *(
-            (not f >= 0, Fault(f"supports[{i}].friction", f, "0 or more", "ratio"))
-            for i, f in enumerate(friction)
-        ),
+        *((not f >= 0, Fault(f"supports[{i}].friction", f, "0 or more", "ratio")) for i, f in enumerate(friction)),
         *(
             (not g >= 0, Fault(f"supports[{held.support[i]}].gap", g, "0 or more", "movement"))
             for i, g in enumerate(gap)
@@ -302,9 +299,7 @@ def _settled(
     friction = np.sqrt(squares)
     pressing = np.array([normal(s, one) for s, one in enumerate(found)]).reshape(count, supports)
     return Settled(
-        answer=Answer(
-            run, states, wrench, hold_force, on_supports(run, model.held, closed), end_a, end_b, start
-        ),
+        answer=Answer(run, states, wrench, hold_force, on_supports(run, model.held, closed), end_a, end_b, start),
         friction=friction,
         normal=pressing,
         slides=(friction > 0) & (friction >= (1.0 - 1e-6) * model.friction * pressing),

@@ -83,7 +83,5 @@ def influence(run: Run) -> Influence:
     fields = (wrench, force, on_supports(run, held, force), *rest)
     table = np.concatenate([field.reshape(count, -1) for field in fields], axis=1)
     ends = np.cumsum([field[0].size for field in fields]).tolist()
-    places = tuple(
-        (slice(end - field[0].size, end), field.shape[1:]) for end, field in zip(ends, fields, strict=True)
-    )
+    places = tuple((slice(end - field[0].size, end), field.shape[1:]) for end, field in zip(ends, fields, strict=True))
     return Influence(run, table, places)

@@ -71,9 +71,7 @@ def _moments(answer: Answer, made: Elements) -> tuple[Array, Array, Array, Array
     middle = np.full((count, n, rows), 0.5)
     weighs = bool(weight.any())
     if weighs:
-        middle[:, made.straight] = _peak(
-            force[..., made.straight, :], weight[:, made.straight], along, length, made
-        )
+        middle[:, made.straight] = _peak(force[..., made.straight, :], weight[:, made.straight], along, length, made)
     end_tan, end_in = np.empty_like(along), np.empty_like(along)
     end_tan[:, made.straight] = along[:, made.straight]
     end_in[:, made.straight] = _after(run, made)
@@ -217,9 +215,7 @@ def _movements(answer: Answer, made: Elements, fractions: Sequence[float]) -> tu
 def _part(made: Elements, fraction: float) -> Elements:
     """The elements from their start to a fraction of them."""
     shape = made.shape
-    part = Shape(
-        shape.start, shape.along, shape.inward, fraction * shape.length, shape.radius, fraction * shape.angle
-    )
+    part = Shape(shape.start, shape.along, shape.inward, fraction * shape.length, shape.radius, fraction * shape.angle)
     return Elements(made.rows, part, Properties(*made.prop), made.straight, made.bent, made.end)
 
 

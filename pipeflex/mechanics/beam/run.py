@@ -223,10 +223,7 @@ def geometry(corners: Array, radius: Array) -> tuple[Array, Array, Array, Array,
     if short.any():
         refuse(
             InputError,
-            *(
-                (short[i], Fault(f"leg {i + 1}", 0.0, "longer than zero", "length"))
-                for i in range(len(lengths))
-            ),
+            *((short[i], Fault(f"leg {i + 1}", 0.0, "longer than zero", "length")) for i in range(len(lengths))),
         )
     along = legs / lengths
     before, after = along[:, :-1], along[:, 1:]
@@ -368,6 +365,4 @@ def _check_on_straight(
             swapped = distances[other] < distances[one]
             if swapped.any():
                 what = f"{_name(placed[one])}, {_name(placed[other])}"
-                refuse(
-                    InputError, (swapped, Fault(what, None, "in the same order along the run in every row"))
-                )
+                refuse(InputError, (swapped, Fault(what, None, "in the same order along the run in every row")))

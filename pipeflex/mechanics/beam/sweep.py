@@ -83,9 +83,7 @@ def linear(run: Run, states: States) -> Answer:
     work: Work = {}
     for made in (elements(run, rows) for rows in chunks(run)):
         held, member = holds(run, made), members(made, run)
-        wrench, force, *rest = sweep(
-            run, made, member, held, *free_twists(run, states, made, member), work=work
-        )
+        wrench, force, *rest = sweep(run, made, member, held, *free_twists(run, states, made, member), work=work)
         parts.append((wrench, force, on_supports(run, held, force), *rest))
     if len(parts) == 1:
         return Answer(run, states, *parts[0])
@@ -119,9 +117,7 @@ def free_twists(
     if factor.any() and run.weights:
         jumps = factor * point_wrenches(run, made)
     moved = [
-        np.zeros((count, 6, made.end.shape[1]))
-        if m is None
-        else states_first(m, (count, 6, run.rows))[:, :, rows]
+        np.zeros((count, 6, made.end.shape[1])) if m is None else states_first(m, (count, 6, run.rows))[:, :, rows]
         for m in (states.movement_a, states.movement_b)
     ]
     return free, loads, jumps, moved[0], moved[1]
