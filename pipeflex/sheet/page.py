@@ -148,7 +148,7 @@ class View:
         self.remarks = tuple(r.words(units) for r in said if not r.serious)
         self.checks = results.checks(outcome, units)
         self.loads = results.loads(outcome, units)
-        self.every_load = results.every_load(outcome, units)
+        self.changing_loads = results.changing_loads(outcome, units)
         self.load_terms = results.load_terms(outcome, units)
         self.movements = results.movements(outcome, units)
         self.rungs = results.rungs(sheet.ladder, outcome, units) if sheet.ladder else ()

@@ -51,13 +51,14 @@ def _check(check: Check, units: UnitSystem) -> CheckRow:
 class LoadRow:
     """The greatest of one load: direction in words, and thermal part, friction, weight and sum in each unit system.
 
-    The parts are counted along the direction of the sum.
+    The parts are counted along the direction of the sum. `alone` : the point has no other load.
     """
 
     point: str
     direction: str
     state: str
     parts: tuple[tuple[str, ...], ...]
+    alone: bool
 
 
 @dataclass(frozen=True, slots=True)
@@ -70,7 +71,8 @@ class LoadStates:
 
 def loads(outcome: Outcome, units: UnitSystem = "metric") -> tuple[LoadRow, ...]:
     """The greatest of every load of a single row."""
-    return tuple(_greatest(load, units) for load in outcome.loads)
+    points = [load.point for load in outcome.loads]
+    return tuple(_greatest(load, units, points.count(load.point) == 1) for load in outcome.loads)
 
 
 def _both(units: UnitSystem) -> tuple[UnitSystem, ...]:
@@ -83,28 +85,26 @@ def _columns(load: Load) -> np.ndarray:
     return np.stack([np.atleast_1d(v) for v in (load.thermal, load.friction, load.weight, load.total)], axis=1)
 
 
-def _greatest(load: Load, units: UnitSystem) -> LoadRow:
+def _greatest(load: Load, units: UnitSystem, alone: bool) -> LoadRow:
     i = int(load.worst)
     numbers = _columns(load)[i]
     total = float(numbers[-1])
     signed = [float(v) for v in numbers * (-1.0 if total < 0 else 1.0)]
     parts = tuple(tuple(alike(signed, load.kind, u)) for u in _both(units))
-    return LoadRow(load.point, f"{load.name}, {load.toward(total)}", load.states[i], parts)
+    return LoadRow(load.point, f"{load.name}, {load.toward(total)}", load.states[i], parts, alone)
 
 
-def every_load(outcome: Outcome, units: UnitSystem = "metric") -> tuple[LoadStates, ...]:
-    """Every load of a single row in every state; one line where all states are alike."""
-    return tuple(_in_states(load, units) for load in outcome.loads)
+def changing_loads(outcome: Outcome, units: UnitSystem = "metric") -> tuple[LoadStates, ...]:
+    """The loads of a single row in every state; those that print alike in all states are left out."""
+    every = (_in_states(load, units) for load in outcome.loads)
+    return tuple(load for load in every if len({row[1:] for row in load.states}) > 1)
 
 
 def _in_states(load: Load, units: UnitSystem) -> LoadStates:
     numbers = _columns(load)
     flat = alike([float(v) for v in numbers.ravel()], load.kind, units)
-    rows = [tuple(flat[4 * i : 4 * i + 4]) for i in range(len(numbers))]
-    heading = f"{load.point}, {load.name}, positive {load.positive}"
-    if len(set(rows)) == 1:
-        return LoadStates(heading, (("every state", *rows[0]),))
-    return LoadStates(heading, tuple((state, *row) for state, row in zip(load.states, rows, strict=True)))
+    rows = tuple((state, *flat[4 * i : 4 * i + 4]) for i, state in enumerate(load.states))
+    return LoadStates(f"{load.point}, {load.name}, positive {load.positive}", rows)
 
 
 def load_terms(outcome: Outcome, units: UnitSystem = "metric") -> str:

@@ -7,6 +7,7 @@ import re
 import numpy as np
 import pytest
 
+from pipeflex.methods import solve
 from pipeflex.model.layout import Support
 from pipeflex.sheet import scene, svg
 from pipeflex.sheet.drawing.parts import HEAVY, Area, Stroke
@@ -153,6 +154,16 @@ def test_the_ribbon_is_black_and_flagged_only_where_it_passes_one():
     assert "97\u00a0%" in [label.text for label in ribbon(0.97).labels]
     assert black(ribbon(1.3))
     assert {label.bold for label in ribbon(1.3).labels if label.text == "130\u00a0%"} == {True}
+
+
+@pytest.mark.parametrize("shape", ["L", "Z", "U", "raised U"])
+def test_ribbon_and_hot_shape_of_the_beam_follow_the_pipe(shape):
+    drawn = scene(solve(line(shape, first_guide=1.2, rest_spacing=5.0), "beam_flexibility"))
+    pipe = [s.points for s in drawn.shapes if isinstance(s, Stroke) and s.weight == HEAVY]
+    near = [s.points for s in drawn.shapes if s.role in ("heat", "ribbon") and (isinstance(s, Area) or s.dash)]
+    assert len(near) > 10
+    for p in (p for points in near for p in points if p[1] < drawn.height - 11):
+        assert min(distance(p, a, b) for line_ in pipe for a, b in itertools.pairwise(line_)) < 14, p
 
 
 def test_without_curves_there_is_neither_ribbon_nor_hot_shape():
