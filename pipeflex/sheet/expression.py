@@ -5,6 +5,7 @@ subscripts, and a root sign drawn as inline SVG; the plain form of the same expr
 """
 
 import ast
+import re
 from collections.abc import Callable, Iterable, Mapping
 from dataclasses import dataclass
 from html import escape
@@ -204,6 +205,14 @@ def _printed(tree: ast.expr, source: str, leaf: Leaf, *, numbers: bool) -> Expre
 def glyph(symbol: str) -> Expression:
     """A symbol as printed."""
     piece = _letters(SYMBOLS[symbol].glyph)
+    return Expression(piece.text, piece.html)
+
+
+def head(text: str) -> Expression:
+    """The head of a column: a letter with its subscript as a symbol, words as they are."""
+    if not re.fullmatch(r"\w(_\w+)?", text):
+        return Expression.plain(text)
+    piece = _letters(text)
     return Expression(piece.text, piece.html)
 
 

@@ -12,6 +12,9 @@ from pipeflex.sheet.expression import Expression
 from pipeflex.sheet.numbers import alike
 from pipeflex.trace import Given, Matrix, Said, Step, Stepped, Tabled, Worked
 
+_WIDEST, _BETWEEN = 110, 3
+"""Letters beside each other that paper takes, and those left between columns."""
+
 Form = Literal["heading", "sentence", "value", "worked", "table", "matrix"]
 
 
@@ -22,6 +25,21 @@ class Grid:
     heads: tuple[Expression, ...]
     rows: tuple[tuple[str, ...], ...]
     marked: int | None = None
+
+    def parts(self, widest: int = _WIDEST) -> "Iterator[Grid]":
+        """The grid cut between columns, each part with the first column and at most so many letters wide."""
+        columns = list(zip(*([h.text for h in self.heads], *self.rows), strict=True))
+        widths = [max(map(len, column)) + _BETWEEN for column in columns]
+        start = 1
+        while start < len(columns):
+            end, taken = start + 1, widths[0] + widths[start]
+            while end < len(columns) and taken + widths[end] <= widest:
+                taken += widths[end]
+                end += 1
+            chosen = (0, *range(start, end))
+            rows = tuple(tuple(row[i] for i in chosen) for row in self.rows)
+            yield Grid(tuple(self.heads[i] for i in chosen), rows, self.marked)
+            start = end
 
 
 @dataclass(frozen=True, slots=True)
@@ -158,7 +176,7 @@ def _matrix(step: Matrix, units: UnitSystem) -> Line:
         formula=expression.written(step.equation),
         source=step.ref,
         grid=Grid(
-            tuple(Expression.plain(h) for h in ("", *step.heads)),
+            (Expression.plain(""), *map(expression.head, step.heads)),
             tuple(zip(names, *columns, strict=True)),
         ),
     )

@@ -109,7 +109,8 @@ def _line(line: Line) -> Iterator[str]:
     if line.numbers is not None:
         yield f"       = {line.numbers}"
     if line.grid is not None:
-        yield from _grid(line.grid)
+        for part in line.grid.parts():
+            yield from _grid(part)
     if line.source:
         yield from _wrapped(f"       {line.source}", 7)
 

@@ -118,3 +118,8 @@ def test_the_label_of_an_expression_is_its_plain_form():
 
 def test_an_equation_of_matrices():
     assert expression.written("X = solve(C, X_d)").html == "<i>X</i> = solve(<i>C</i>, <i>X</i><sub>d</sub>)"
+
+
+def test_heads_of_columns():
+    assert expression.head("D_12").html == "<i>D</i><sub>12</sub>"
+    assert expression.head("last end, force up").html == "last end, force up"

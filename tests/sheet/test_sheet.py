@@ -2,6 +2,8 @@
 
 import html as std_html
 import re
+import subprocess
+import sys
 from html.parser import HTMLParser
 
 import numpy as np
@@ -14,9 +16,11 @@ from pipeflex.model.duty import Title
 from pipeflex.model.outcome import Turn
 from pipeflex.model.words import Origin, Verdict
 from pipeflex.sheet import Sheet, read_design
+from pipeflex.sheet.expression import Expression
 from pipeflex.sheet.headline import holding_side
 from pipeflex.sheet.html import css_string
 from pipeflex.sheet.inputs import inputs
+from pipeflex.sheet.ledger import Grid
 from pipeflex.sheet.numbers import alike, exact
 from tests.sheet.lines import NASTY, SIZES, answered, line, sheet
 
@@ -291,3 +295,22 @@ def test_parts_are_named(whole):
     assert "<table>" in whole.part("checks")
     with pytest.raises(InputError, match="part"):
         whole.part("script")
+
+
+def test_wide_grids_are_cut_between_columns_and_keep_every_number():
+    heads = tuple(Expression.plain(f"D_{i}") for i in range(21))
+    grid = Grid(heads, tuple((f"row {i}", *(f"{i * 100 + j}.000000" for j in range(20))) for i in range(3)), marked=1)
+    parts = list(grid.parts())
+    assert len(parts) > 2
+    assert all(part.rows[0][0] == "row 0" and part.marked == 1 for part in parts)
+    for i, row in enumerate(grid.rows):
+        assert [cell for part in parts for cell in part.rows[i][1:]] == list(row[1:])
+    assert [h.text for part in parts for h in part.heads[1:]] == [h.text for h in heads[1:]]
+
+
+def test_the_sheet_needs_neither_widgets_nor_plots():
+    code = (
+        "import sys, pipeflex.sheet; print(sorted({'plotly', 'ipywidgets', 'anywidget', 'IPython'} & set(sys.modules)))"
+    )
+    done = subprocess.run([sys.executable, "-c", code], capture_output=True, text=True, check=True)
+    assert done.stdout.strip() == "[]"
