@@ -125,6 +125,7 @@ SYMBOLS: Final[dict[str, Symbol]] = _symbols(
     ("S_h_used", "S_h as used in the range", "stress", "S_h"),
     ("S_L", "sustained stress", "stress", "S_L"),
     ("S_A", "allowable displacement stress range", "stress", "S_A"),
+    ("S_Ab", "allowable displacement stress range with the unused sustained stress added", "stress", "S_A"),
     ("S_E", "computed displacement stress range", "stress", "S_E"),
     ("S", "bending stress of the guided leg", "stress", "S"),
     ("S_rule", "allowable stress entered with the rule", "stress", "S_r"),

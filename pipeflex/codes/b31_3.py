@@ -16,6 +16,8 @@ from pipeflex.trace import Choice, formula
 
 _2018: Final = "ASME B31.3-2018 para. 302.3.5(d)"
 _2022: Final = "ASME B31.3-2022 para. 302.3.5(d)"
+_BOTH: Final = "ASME B31.3-2018 and 2022, para. 302.3.5(d)"
+_SCREEN: Final = "ASME B31.3-2018 and 2022, para. 319.4.1(c)"
 
 LEAST_F: Final = 0.15
 """Least stress range factor."""
@@ -42,37 +44,43 @@ def range_factor_2022(N: Any, f_m: Any, f_min: Any = LEAST_F) -> Any:
     return np.maximum(f_min, np.minimum(f_m, 20 * np.asarray(N) ** -0.333))
 
 
-@formula("S_c_used = min(S_c, S_cap)", ref=f"{_2018}: at most 138 MPa (20 ksi) where f exceeds 1")
+@formula("S_c_used = min(S_c, S_cap)", ref=f"{_BOTH}: at most 138 MPa (20 ksi) where f exceeds 1")
 def cold_allowable_capped(S_c: Any, S_cap: Any = S_CAP) -> Any:
     """S_c [Pa] as used where f exceeds 1."""
     return np.minimum(S_c, S_cap)
 
 
-@formula("S_c_used = S_c", ref=_2018)
+@formula("S_c_used = S_c", ref=_BOTH)
 def cold_allowable(S_c: Any) -> Any:
     """S_c [Pa] as used where f does not exceed 1."""
     return S_c
 
 
-@formula("S_h_used = min(S_h, S_cap)", ref=f"{_2018}: at most 138 MPa (20 ksi) where f exceeds 1")
+@formula("S_h_used = min(S_h, S_cap)", ref=f"{_BOTH}: at most 138 MPa (20 ksi) where f exceeds 1")
 def hot_allowable_capped(S_h: Any, S_cap: Any = S_CAP) -> Any:
     """S_h [Pa] as used where f exceeds 1."""
     return np.minimum(S_h, S_cap)
 
 
-@formula("S_h_used = S_h", ref=_2018)
+@formula("S_h_used = S_h", ref=_BOTH)
 def hot_allowable(S_h: Any) -> Any:
     """S_h [Pa] as used where f does not exceed 1."""
     return S_h
 
 
-@formula("S_A = f*(1.25*S_c_used + 0.25*S_h_used)", ref=f"{_2018} eq. (1a)")
+@formula("S_A = f*(1.25*S_c_used + 0.25*S_h_used)", ref=f"{_BOTH} eq. (1a)")
 def allowable_range(f: Any, S_c_used: Any, S_h_used: Any) -> Any:
     """Allowable displacement stress range [Pa]."""
     return f * (1.25 * S_c_used + 0.25 * S_h_used)
 
 
-@formula("S_A = f*(1.25*(S_c_used + S_h_used) - S_L)", ref=f"{_2018} eq. (1b)")
+@formula("S_Ab = S_A", ref=f"{_BOTH}: eq. (1a) stays where S_L is not below S_h")
+def range_without_unused(S_A: Any) -> Any:
+    """Allowable range [Pa] where no sustained stress is left unused."""
+    return S_A
+
+
+@formula("S_Ab = f*(1.25*(S_c_used + S_h_used) - S_L)", ref=f"{_BOTH} eq. (1b)")
 def range_with_unused_sustained(f: Any, S_c_used: Any, S_h_used: Any, S_L: Any) -> Any:
     """Allowable displacement stress range [Pa] with the unused sustained stress added.
 
@@ -93,7 +101,7 @@ def equivalent_cycles_2022(N_E: Any, r_i: Any, N_i: Any) -> Any:
     return N_E + r_i**3 * N_i
 
 
-@formula("q = D_o*y/(L_dev - U_a)**2", ref="ASME B31.3-2018 para. 319.4.1(c) eq. (16)")
+@formula("q = D_o*y/(L_dev - U_a)**2", ref=f"{_SCREEN} eq. (16)")
 def screening_value(D_o: Any, y: Any, L_dev: Any, U_a: Any) -> Any:
     """Screening value of one run of one size between two anchors, nothing between them.
 
@@ -102,7 +110,7 @@ def screening_value(D_o: Any, y: Any, L_dev: Any, U_a: Any) -> Any:
     return D_o * y / (L_dev - U_a) ** 2
 
 
-@formula("K_1 = K_code*S_A/E_a", ref="ASME B31.3-2018 para. 319.4.1(c): 208 000 S_A/E_a (mm/m)2")
+@formula("K_1 = K_code*S_A/E_a", ref=f"{_SCREEN}: 208 000 S_A/E_a (mm/m)2")
 def greatest_screening_value(S_A: Any, E_a: Any, K_code: Any = SCREENING_CONSTANT) -> Any:
     """Greatest screening value at which no formal analysis is asked."""
     return K_code * S_A / E_a
@@ -123,7 +131,7 @@ _CONFIRM: Final = "Clauses from memory: confirm against the licensed {}."
 @cache
 def editions() -> tuple[PipingCode, ...]:
     """The editions held here."""
-    with_sustained = Choice("S_h > S_L", range_with_unused_sustained, allowable_range)
+    with_sustained = Choice("S_h > S_L", range_with_unused_sustained, range_without_unused)
     b31_3_2018 = PipingCode(
         key="B31.3-2018",
         title="ASME B31.3 Process Piping",
@@ -131,7 +139,7 @@ def editions() -> tuple[PipingCode, ...]:
         stress_tables=("stress/asme_b31_3_2018", "stress/asme_b31_3_2008", "stress/copper_tube_handbook"),
         cycles_exponent=5.0,
         allowable_range=(range_factor_2018, *_CAPS, allowable_range),
-        allowable_range_with_sustained=(range_factor_2018, *_CAPS, with_sustained),
+        allowable_range_with_sustained=(with_sustained,),
         screening=(screening_value, greatest_screening_value),
         bend_factors=FrozenMap(BEND_FACTORS),
         expansion_stress=EXPANSION_STRESS,
@@ -154,7 +162,6 @@ def editions() -> tuple[PipingCode, ...]:
         stress_tables=("stress/asme_b31_3_2022", *b31_3_2018.stress_tables),
         cycles_exponent=3.0,
         allowable_range=(range_factor_2022, *_CAPS, allowable_range),
-        allowable_range_with_sustained=(range_factor_2022, *_CAPS, with_sustained),
         remarks=(_CONFIRM.format("ASME B31.3-2022"),),
     )
     return b31_3_2018, b31_3_2022

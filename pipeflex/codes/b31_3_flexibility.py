@@ -10,10 +10,10 @@ import numpy as np
 
 from pipeflex.formulas import Rule, formula
 
-_D300: Final = "ASME B31.3-2018 Table D300"
-_319_4: Final = "ASME B31.3-2018 para. 319.4.4"
-_320_2: Final = "ASME B31.3-2018 para. 320.2"
-_319_5: Final = "ASME B31.3-2018 para. 319.5.1"
+_D300: Final = "ASME B31.3-2018 Table D300 (2022: ASME B31J)"
+_319_4: Final = "ASME B31.3-2018 and 2022, para. 319.4.4"
+_320_2: Final = "ASME B31.3-2018 and 2022, para. 320.2"
+_319_5: Final = "ASME B31.3-2018 and 2022, para. 319.5.1"
 
 MOST_MITRE: Final = np.radians(22.5)
 """Greatest half angle of a mitre for which the table holds [rad]."""

@@ -6,7 +6,7 @@ from typing import Any, Final
 
 import numpy as np
 
-from pipeflex.model.outcome import Check, Ladder, Load, Movement, Outcome, Rung
+from pipeflex.model.outcome import Along, Check, Ladder, Load, Movement, Outcome, Rung, Shape
 from pipeflex.quantities import KINDS, SYMBOLS, Dimension
 
 FORM: Final = 1
@@ -80,6 +80,8 @@ def to_json(outcome: Outcome, ladder: Ladder | None = None, headline: str | None
             "at": [_load(load) for load in outcome.loads],
         },
         "movements": [_movement(movement) for movement in outcome.movements],
+        "along": [_along(along) for along in outcome.along],
+        "shapes": [_shape(shape) for shape in outcome.shapes],
         "results": {symbol: _result(symbol, value) for symbol, value in sorted(outcome.results.items())},
         "remarks": [remark.words() for remark in outcome.remarks],
         "ladder": None if ladder is None else [_rung(rung) for rung in ladder.rungs],
@@ -124,10 +126,13 @@ def _load(load: Load) -> dict[str, Any]:
             "state": state,
             "thermal": _finite(thermal),
             "friction": _finite(friction),
+            "weight": _finite(weight),
             "total": _finite(total),
             "toward": load.toward(total),
         }
-        for state, thermal, friction, total in zip(load.states, load.thermal, load.friction, load.total, strict=True)
+        for state, thermal, friction, weight, total in zip(
+            load.states, load.thermal, load.friction, load.weight, load.total, strict=True
+        )
     ]
     return {
         "point": load.point,
@@ -154,6 +159,28 @@ def _movement(movement: Movement) -> dict[str, Any]:
     }
 
 
+def _along(along: Along) -> dict[str, Any]:
+    """A quantity at distances from the first end along the run."""
+    return {
+        "key": along.key,
+        "title": along.title,
+        "unit": si_unit(along.kind),
+        "distance": {"unit": "m", "values": _finite(along.distance)},
+        "values": _finite(along.value),
+    }
+
+
+def _shape(shape: Shape) -> dict[str, Any]:
+    """Places along the run and how they move in one state: along, across and up."""
+    return {
+        "state": shape.state,
+        "unit": "m",
+        "directions": ["along", "across", "up"],
+        "points": _finite(np.transpose(shape.points)),
+        "movements": _finite(np.transpose(shape.movement)),
+    }
+
+
 def _result(symbol: str, value: Any) -> dict[str, Any]:
     about = SYMBOLS.get(symbol)
     return {
@@ -173,5 +200,7 @@ def _rung(rung: Rung) -> dict[str, Any]:
         "ratio": _finite(rung.ratio),
         "leg": {"unit": "m", "value": _finite(rung.leg)},
         "anchor": {"unit": "N", "value": _finite(rung.anchor)},
+        "ratio_to_reference": _finite(rung.to_best),
+        "reference_at_its_leg": _finite(rung.at_leg),
         "unsafe": rung.unsafe,
     }

@@ -219,10 +219,6 @@ def _allowable(design: Design, pool: dict[str, Any], calc: Calc, remarks: list[R
         remark("A greatest f of {f_m} was asked; the code permits 1.0 for this material and temperature.",
                ~permitted & (np.asarray(duty.greatest_range_factor) > 1), f_m=(duty.greatest_range_factor, "ratio"))
     )  # fmt: skip
-    if duty.unused_sustained:
-        remarks.append(
-            remark("Eq. (1b) was asked: this method does not know the sustained stress, so eq. (1a) is used.")
-        )
     for one, rows in lookup.members(pipe):
         _remark_stress(design, one, rows, remarks)
     remarks += [remark(text) for text in code.remarks]

@@ -4,6 +4,7 @@ Bending, torsion and stretch; shear is left out. The range is that of the run wi
 without friction; reactions of a single design follow its rests, gaps and friction along a history.
 """
 
+from dataclasses import replace
 from typing import Any, Final
 
 import numpy as np
@@ -47,28 +48,33 @@ def run(design: Design, basis: Basis, calc: Calc) -> Outcome:
     found = stress_range(design, sections, answer, basis.e if model.uniform else None)
     remarks = [*basis.remarks, *_remarks(design, model)]
     show_solution(design, basis, model, answer, calc)
-    trace_range(design, sections, found, calc)
     felt, owner = _loads(design, basis, model, answer, factors, calc.tracing)
+    shown = (sections, found)
     if felt.contacts is not None:
-        remarks.append(_with_contacts(design, basis, owner, factors, felt.contacts))
+        shown = _with_contacts(design, basis, owner, factors, felt.contacts, shown, remarks)
+    trace_range(design, *shown, calc)
+    sustained_check = _sustained_check(design, basis, factors, felt, calc)
+    range_check = _range_check(*shown)
+    if design.duty.unused_sustained and not sustained_check.unjudged:
+        range_check = _with_unused(design, basis, range_check, sustained_check, calc)
     loads = loads_of(design, owner, felt) if calc.tracing or rows == 1 else _column_loads(design, owner, felt)
     checks = [
-        _range_check(sections, found),
+        range_check,
         room_check(design, basis, calc),
         shoe_check(design, basis),
         *_anchor_checks(design, felt),
         *_end_checks(design, felt),
         _guide_check(design, owner, felt),
-        _sustained_check(design, basis, factors, felt, calc),
+        sustained_check,
     ]
     results = {name: basis.pool[name] for name in ("w", "e", "E_a", "S_A", "f", "I", "Z")}
-    results |= {"S_E": found.S_E} | held_rigidly(design, basis, calc)
+    results |= {"S_E": range_check.demand} | held_rigidly(design, basis, calc)
     results |= _cold_spring(design, basis, model, answer, found, remarks, calc)
     severe = design.code.severe_cyclic
     if severe is not None:
         remarks.append(
             remark("Cyclic conditions may be severe (the range above 0.8 S_A and more than 7000 cycles): "
-                   "the code asks more.", severe(found.S_E, basis.S_A, basis.pool["N"]), True)
+                   "the code asks more.", severe(range_check.demand, range_check.limit, basis.pool["N"]), True)
         )  # fmt: skip
     remarks += felt.remarks
     extra: dict[str, Any] = {}
@@ -106,12 +112,8 @@ def _loads(
 ) -> tuple[Felt, Model]:
     """Loads of a single design with rests by its history; of a column, or without rests, by sums of friction."""
     rests = design.layout.rest_spacing is not None or any(s.kind == "rest" for s in design.layout.supports)
-    gaps = any(h.gap > 0 for s in model.run.supports for h in s.holds)
-    if single and (rests or gaps):
-        felt, owner = settled_loads(design, basis, [f["k"] for f in factors])
-        if not rests:
-            felt.weighed = []
-        return felt, owner
+    if single and rests:
+        return settled_loads(design, basis, [f["k"] for f in factors])
     R_E = basis.case_modulus / basis.E_a
     if model.uniform:
         return plain_loads(design, basis, model, answer, tuple(c.name for c in design.duty.cases), R_E), model
@@ -125,11 +127,29 @@ def _column_loads(design: Design, model: Model, felt: Felt) -> tuple[Load, ...]:
 
 
 def _with_contacts(
-    design: Design, basis: Basis, model: Model, factors: list[dict[str, Any]], contacts: Answer
-) -> Remark:
-    """The range with gaps and rests as they act, for information beside the one with guides closed."""
-    found = stress_range(design, sections_of(design, basis, model, factors), contacts, None)
-    return remark("With gaps and rests as they act, and without friction, the range is {S}.", S=(found.S_E, "stress"))
+    design: Design,
+    basis: Basis,
+    model: Model,
+    factors: list[dict[str, Any]],
+    contacts: Answer,
+    closed: tuple[Sections, Range],
+    remarks: list[Remark],
+) -> tuple[Sections, Range]:
+    """The range with gaps and rests as they act; it governs where rests hold a line that rises or falls."""
+    sections = sections_of(design, basis, model, factors)
+    found = stress_range(design, sections, contacts, None)
+    remarks.append(
+        remark("With gaps and rests as they act, and without friction, the range is {S}.", S=(found.S_E, "stress"))
+    )
+    more = float((found.S_E / found.S_A)[0]) > float((closed[1].S_E / closed[1].S_A)[0])
+    return (sections, found) if more else closed
+
+
+def _with_unused(design: Design, basis: Basis, check: Check, weighed: Check, calc: Calc) -> Check:
+    """The range against eq. (1b), with the greatest sustained stress of the run taken at every point."""
+    pool = {**basis.pool, "S_L": weighed.demand}
+    limit = follow(design.code.allowable_range_with_sustained, pool, calc)
+    return replace(check, limit=limit, note="eq. (1b), with the unused sustained stress added")
 
 
 def _range_check(sections: Sections, found: Range) -> Check:

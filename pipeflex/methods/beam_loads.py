@@ -115,7 +115,7 @@ def settled_loads(design: Design, basis: Basis, factors: list[Any]) -> tuple[Fel
 
 
 def _histories(design: Design, basis: Basis) -> list[tuple[list[str], States, Rows]]:
-    """Names, states and E_m/E_a of two histories, the first state being the run as laid."""
+    """Names, states and E_m/E_a of two histories: the run as laid, its cases, and what stays locked in afterwards."""
     every = strains(design, basis)
     cases, ties = every[:-2], every[-2:]
     move_a, move_b = end_movements(design)
@@ -130,14 +130,15 @@ def _histories(design: Design, basis: Basis) -> list[tuple[list[str], States, Ro
             again = " again" if n == len(going) else ""
             names.append(f"{design.duty.cases[c].name}, {way}{again}, tied in on the {day} day")
             before = cases[c, 0, 0]
-        still = np.zeros((1, 6, 1))
+        names.append(f"{State.INSTALLED} again, tied in on the {day} day")
+        still, cold = np.zeros((1, 6, 1)), np.zeros((1, *ties.shape[1:]))
         states = States(
-            strain=np.concatenate([np.zeros((1, *ties.shape[1:])), cases[visits] - ties[tie]]),
+            strain=np.concatenate([cold, cases[visits] - ties[tie], cold]),
             weight=1.0,
-            movement_a=np.concatenate([still, move_a[visits]]),
-            movement_b=np.concatenate([still, move_b[visits]]),
+            movement_a=np.concatenate([still, move_a[visits], still]),
+            movement_b=np.concatenate([still, move_b[visits], still]),
         )
-        found.append((names, states, R[visits]))
+        found.append((names, states, np.concatenate([R[visits], np.ones_like(R[:1])])))
         if np.array_equal(ties[0], ties[1]):
             break
     return found

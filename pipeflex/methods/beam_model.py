@@ -15,6 +15,8 @@ from pipeflex.model.pipe import Pipe
 
 Rows = np.ndarray
 
+_BOW: Final = {"linear": 1.0, "half and half": 4 / np.pi}
+"""Curvature over that of an even fall of temperature (first moment of a thin ring, half of it hot)."""
 _CLEAR: Final = 0.25
 """Part of the spacing that the last guide of a row keeps from the anchor."""
 _LEVEL: Final = 1e-6
@@ -308,7 +310,7 @@ def bows(design: Design) -> Rows | None:
         half = np.broadcast_to(c.top_to_bottom, (rows,)) / 2
         field = f"duty.cases.{c.name}.top_to_bottom"
         top, bottom = (lookup.values_at(pipe, lookup.expansion, t + s * half, field) for s in (1, -1))
-        found.append((top - bottom) / pipe.outside_diameter)
+        found.append((top - bottom) / pipe.outside_diameter * _BOW[c.top_to_bottom_form])
     return np.stack(found)[:, None]
 
 

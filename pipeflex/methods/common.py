@@ -73,6 +73,8 @@ def unseen(design: Design, outside: Outside) -> None:
     outside.note("Gap and stiffness of guides are not judged.",
                  layout.first_guide is not None or any(s.kind == "guide" for s in layout.supports))  # fmt: skip
     outside.note("Springs are not judged.", any(s.kind == "spring" for s in layout.supports))
+    outside.note("Eq. (1b) was asked: this method does not know the sustained stress, so eq. (1a) is used.",
+                 duty.unused_sustained)  # fmt: skip
     outside.note("The sustained stress of weight and pressure is not judged.", True)
 
 

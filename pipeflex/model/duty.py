@@ -25,7 +25,9 @@ class Case(Record):
     last_end_movement: tuple[float, ...] = vector("movement", 3, default=(0.0,) * 3)
     first_end_rotation: tuple[float, ...] = vector("angle", 3, default=(0.0,) * 3)
     last_end_rotation: tuple[float, ...] = vector("angle", 3, default=(0.0,) * 3)
-    top_to_bottom: float = number("temperature change", default=0.0)
+    top_to_bottom: float = number("temperature change", default=0.0, label="Top to bottom")
+    top_to_bottom_form: str = pick_of("linear", "half and half", default="linear")
+    """How the temperature falls over the section: evenly, or the upper half hot and the lower half not."""
 
     def check(self) -> None:
         refuse(MissingInput, ("." in self.name, Fault("name", self.name, allowed="a name without a point")))
@@ -139,6 +141,7 @@ class PipingCode(Record):
     """Power of r_i in the equivalent cycles: it belongs to the slope of f."""
     allowable_range: Clauses = anything()
     allowable_range_with_sustained: Clauses = anything(default=())
+    """What follows `allowable_range` where the sustained stress is known and its unused part is to be added."""
     screening: Clauses = anything(default=())
     bend_factors: FrozenMap = anything(default=FrozenMap())
     """Rules of each kind of corner: flexibility and stress intensification."""
