@@ -97,7 +97,7 @@ def test_a_guided_leg_is_the_guided_cantilever(line):
     rule = cantilever_stress(E_a=E_a, D_o=0.219075, delta=e * 12.0, l=4.0)
     point = next(a for a in found.along if a.key == "moment")
     moment = float(np.max(point.value))
-    assert moment / found.results["Z"] == pytest.approx(rule, rel=0.02)
+    assert 0.95 * rule < moment / found.results["Z"] < rule  # the pipe's stretch takes 1.2 %, the stubs turn a little
 
 
 def test_ends_that_yield_lower_the_force(line):
@@ -244,7 +244,7 @@ def test_a_route_in_words_is_the_shape_in_sizes(line):
     shaped = line("U")
     points = route("east 18.5 m\nnorth 6 m; east 3 m\n# back\nsouth 6 m\neast 18.5 m")
     walked = dataclasses.replace(
-        walked, layout=Layout(shape="points", points=points, corners=elbow("DN 200"), sizes={})
+        shaped, layout=Layout(shape="points", points=points, corners=elbow("DN 200"), sizes={})
     )
     assert solve(walked, BEAM).leading.demand == pytest.approx(solve(shaped, BEAM).leading.demand, rel=1e-12)
     pasted = coordinates("0 0 0\n18500 0 0\n18500\t6000\t0\n21500;6000;0\n21500 0 0\n40000 0 0", "mm")
