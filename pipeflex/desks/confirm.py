@@ -70,9 +70,9 @@ def _rows(design: Design, curve: Curve, i: int) -> Iterator[Asked]:
     older, _, column = source.texts("expansion_older")[source.find(key=design.pipe.material.key)].partition(":")
     found = list(_row(older, column, float(curve.temperature[i]))) if curve is design.pipe.material.expansion else []
     yield from found
-    for k in (curve.own, curve.own + 1):
-        if not found and curve.origin[k] == Origin.MEMORY:
-            yield from _row(curve.table, curve.row, float(curve.temperature[k]))
+    ahead = (curve.own, curve.own + 1) if curve.kind == "modulus" else (curve.own,)
+    for k in ahead if not found else ():
+        yield from _row(curve.table, curve.row, float(curve.temperature[k]))
 
 
 def _row(id_: str, column: str, temperature: float) -> Iterator[Asked]:

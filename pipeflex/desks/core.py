@@ -88,6 +88,10 @@ class Desk:
         """Bring all but fields and picture up to date."""
         raise NotImplementedError
 
+    def say(self) -> None:
+        """Show the problem, or that there is none."""
+        raise NotImplementedError
+
     # --- fields --------------------------------------------------------------------------------------
 
     def field(self, bound: Bound, **how: Any) -> EntryField | ChoiceField:
@@ -378,8 +382,7 @@ class Desk:
             self.problem = error.text(self.look.units)
         else:
             self.problem = f"Fault inside the desk ({type(error).__name__}: {error}). The log has the rest."
-        if self.design is not None:
-            self.show()
+        self.say()
 
     def close(self) -> None:
         """Take the desk off the page; its file has everything."""

@@ -84,14 +84,14 @@ class Screen(Desk):
         return self.top
 
     def _bottom(self) -> list[ipywidgets.Widget]:
-        confirm = ConfirmBand(self)
+        self.confirm = ConfirmBand(self)
         titles = Panel(*(self.field(Words(path=f"title.{name}")) for name in _TITLES), problem=self.tell)
         self.results = {
             "ladder": Band("Ladder", ipywidgets.HTML(), summary="rule to beam", fill=self._fill),
             "loads": Band("Loads", ipywidgets.HTML(), fill=self._fill),
             "ledger": Band("Derivation", ipywidgets.HTML(), fill=self._fill),
         }
-        self.confirming = Band("Confirm values", confirm.panel, fill=confirm.fill)
+        self.confirming = Band("Confirm values", self.confirm.panel, fill=self.confirm.fill)
         self.block = Band("Title block", titles)
         bands = (*self.results.values(), self.confirming, self.block)
         return [Panel(*self.handing.rows(), Row(*bands), problem=self.tell), *(band.content for band in bands)]
@@ -128,7 +128,7 @@ class Screen(Desk):
             self._show_headline(wrong)
             self.metric.pressed, self.us.pressed = self.look.units == "metric", self.look.units == "us"
             self.back.disabled, self.forth.disabled = not self.can(-1), not self.can(1)
-            self.trouble.set(text=self.problem, hidden=not self.problem)
+            self.say()
             self.again.hidden = self.over.hidden = not self.conflict
         self.summaries()
         title = self.held.title
@@ -141,6 +141,9 @@ class Screen(Desk):
         if self.answer.whole and not wrong:
             self._fill()
             self._show_copy()
+
+    def say(self) -> None:
+        self.trouble.set(text=self.problem, hidden=not self.problem)
 
     def _show_headline(self, wrong: tuple[str, ...]) -> None:
         if self.answer is None:
