@@ -60,11 +60,17 @@ def inside(point, label):
     return abs(u - shift) <= half and abs(v) <= 0.35 * label.size
 
 
-def distance(p, a, b):
-    (x, y), (ax, ay), (bx, by) = p, a, b
-    dx, dy = bx - ax, by - ay
-    t = 0.0 if dx == dy == 0 else max(0.0, min(1.0, ((x - ax) * dx + (y - ay) * dy) / (dx * dx + dy * dy)))
-    return math.hypot(x - ax - t * dx, y - ay - t * dy)
+def far(one, other):
+    """Whether two labels are so far apart that they cannot meet."""
+    return math.dist(one.at, other.at) > 0.6 * (one.size * (len(one.text) + 2) + other.size * (len(other.text) + 2))
+
+
+def clear(ink, points):
+    """Least distance of points to a line."""
+    a, b = np.array(points[:-1])[:, None], np.array(points[1:])[:, None]
+    d = b - a
+    t = np.clip(((ink - a) * d).sum(axis=2) / np.maximum((d * d).sum(axis=2), 1e-12), 0, 1)
+    return np.linalg.norm(ink - a - t[..., None] * d, axis=2).min()
 
 
 @pytest.mark.parametrize("name", LINES)
@@ -74,15 +80,17 @@ def test_labels_neither_overlap_nor_leave_the_paper_nor_lie_on_the_pipe(name, un
     for view, viewpoint in VIEWS:
         drawn = scene(outcome, units, view, viewpoint=viewpoint)
         for one, other in itertools.combinations(drawn.labels, 2):
+            if far(one, other):
+                continue
             met = any(inside(p, other) for p in grid(one)) or any(inside(p, one) for p in grid(other))
             assert not met, (view, one, other)
         heavy = [s for s in drawn.shapes if isinstance(s, Stroke) and s.weight >= HEAVY]
         for label in drawn.labels:
-            for x, y in grid(label):
-                assert 0 <= x <= drawn.width, (view, label)
-                assert 0 <= y <= drawn.height, (view, label)
-                near = [distance((x, y), a, b) for s in heavy for a, b in itertools.pairwise(s.points)]
-                assert min(near) > HEAVY / 2, (view, label)
+            ink = np.array(list(grid(label)))
+            assert ink.min() >= 0, (view, label)
+            assert ink[:, 0].max() <= drawn.width, (view, label)
+            assert ink[:, 1].max() <= drawn.height, (view, label)
+            assert min(clear(ink, s.points) for s in heavy) > HEAVY / 2, (view, label)
 
 
 @pytest.mark.parametrize("name", LINES)
@@ -90,7 +98,7 @@ def test_labels_stay_apart_on_small_paper(name):
     for view in ("plan", "isometric"):
         drawn = scene(answered(LINES[name]), view=view, width=125.0, height=82.0)
         for one, other in itertools.combinations(drawn.labels, 2):
-            assert not any(inside(p, other) for p in grid(one)), (view, one, other)
+            assert far(one, other) or not any(inside(p, other) for p in grid(one)), (view, one, other)
         for label in drawn.labels:
             assert all(0 <= x <= drawn.width and 0 <= y <= drawn.height for x, y in grid(label)), (view, label)
 
@@ -163,7 +171,7 @@ def test_ribbon_and_hot_shape_of_the_beam_follow_the_pipe(shape):
     near = [s.points for s in drawn.shapes if s.role in ("heat", "ribbon") and (isinstance(s, Area) or s.dash)]
     assert len(near) > 10
     for p in (p for points in near for p in points if p[1] < drawn.height - 11):
-        assert min(distance(p, a, b) for line_ in pipe for a, b in itertools.pairwise(line_)) < 14, p
+        assert min(clear(np.array([p]), points) for points in pipe) < 14, p
 
 
 def test_without_curves_there_is_neither_ribbon_nor_hot_shape():

@@ -60,9 +60,6 @@ def _apart(one: Polygon, other: Polygon) -> bool:
 
 def overlap(one: Polygon, other: Polygon) -> bool:
     """Whether two convex polygons share some area."""
-    a, b = bounds(one), bounds(other)
-    if a[0] >= b[2] or b[0] >= a[2] or a[1] >= b[3] or b[1] >= a[3]:
-        return False
     return not _apart(one, other) and not _apart(other, one)
 
 
@@ -77,10 +74,10 @@ class _Taken:
 
     def hit(self, polygon: Polygon) -> bool:
         left, top, right, bottom = bounds(polygon)
-        return any(
-            left < box[2] and box[0] < right and top < box[3] and box[1] < bottom and overlap(polygon, other)
-            for box, other in self.items
-        )
+        for (x0, y0, x1, y1), other in self.items:
+            if left < x1 and x0 < right and top < y1 and y0 < bottom and overlap(polygon, other):
+                return True
+        return False
 
 
 class Board:

@@ -109,5 +109,5 @@ def shortened(text: str, longest: int) -> str:
 
 def bounds(points: Sequence[XY]) -> tuple[float, float, float, float]:
     """Least x and y, greatest x and y."""
-    xs, ys = [p[0] for p in points], [p[1] for p in points]
+    xs, ys = zip(*points, strict=True)
     return min(xs), min(ys), max(xs), max(ys)

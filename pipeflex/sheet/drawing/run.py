@@ -78,6 +78,7 @@ class DrawnRun:
     """A layout as drawn in one view.
 
     corners : (n, 3), ends and corners as drawn [m]. true : the same where they are. radii : of the inner corners [m].
+    turns : change of direction at each of them [rad], and the straight that its bend takes from a leg [m].
     matrix : (2, 3) of the view. scale : metres are divided by it. shift : of the drawing on paper [mm].
     """
 
@@ -85,6 +86,7 @@ class DrawnRun:
     corners: Floats
     true: Floats
     radii: tuple[float, ...]
+    turns: tuple[tuple[float, float], ...]
     matrix: Floats
     scale: int
     scale_text: str
@@ -108,14 +110,14 @@ class DrawnRun:
     def tangent(self, corner: int) -> float:
         """Distance from an inner corner to the start of its bend, as drawn [m]."""
         before, after = self.legs[corner], self.legs[corner + 1]
-        return float(min(self._turn(corner)[1], before.far, after.near))
+        return float(min(self.turns[corner][1], before.far, after.near))
 
     def along(self, distance: float) -> Floats | None:
         """Where a point at a distance along the true centreline, bends as arcs, is drawn."""
         taken, begin = 0.0, 0.0
         for i, leg in enumerate(self.legs):
             last = i == len(self.legs) - 1
-            turn, cut = (0.0, 0.0) if last else self._turn(i)
+            turn, cut = (0.0, 0.0) if last else self.turns[i]
             straight = leg.length - begin - cut
             if distance <= taken + straight or (last and distance <= taken + straight * (1 + 1e-9) + 1e-9):
                 return leg.place(min(begin + max(distance - taken, 0.0), leg.length))
@@ -125,11 +127,6 @@ class DrawnRun:
                 return self._on_bend(i, (distance - taken) / arc * turn)
             taken, begin = taken + arc, cut
         return np.asarray(self.corners[-1])
-
-    def _turn(self, i: int) -> tuple[float, float]:
-        """Change of direction at an inner corner [rad], and the straight that its bend takes from a leg [m]."""
-        turn = float(np.arccos(np.clip(self.legs[i].unit @ self.legs[i + 1].unit, -1, 1)))
-        return turn, float(self.radii[i] * np.tan(turn / 2))
 
     def centreline(self) -> list[list[Floats]]:
         """The pipe as pieces of points in space, bends as arcs; a break parts two pieces."""
@@ -148,12 +145,12 @@ class DrawnRun:
     def _bend(self, i: int) -> list[Floats]:
         if self.tangent(i) <= 0:
             return [self.corners[i + 1]]
-        return [self._on_bend(i, a) for a in np.linspace(0, self._turn(i)[0], _ARC_STEPS + 1)]
+        return [self._on_bend(i, a) for a in np.linspace(0, self.turns[i][0], _ARC_STEPS + 1)]
 
     def _on_bend(self, i: int, angle: float) -> Floats:
         """A point of a bend, as drawn, after so much of its turn [rad]."""
         u, v = self.legs[i].unit, self.legs[i + 1].unit
-        turn, reach = self._turn(i)[0], self.tangent(i)
+        turn, reach = self.turns[i][0], self.tangent(i)
         radius = reach / np.tan(turn / 2)
         inward = (v - u * np.cos(turn)) / np.sin(turn)
         start = self.corners[i + 1] - u * reach
@@ -238,4 +235,6 @@ def drawn_run(
         top + (height + float(high_xy[1] + low_xy[1])) / 2,
     )
     radii = tuple(float(layout.corner(i).radius) for i in range(len(lengths) - 1))
-    return DrawnRun(tuple(legs), corners, true, radii, matrix, scale, scale_text, shift)
+    turned = np.arccos(np.clip((unit[:-1] * unit[1:]).sum(axis=1), -1, 1))
+    turns = tuple((float(a), float(r * np.tan(a / 2))) for a, r in zip(turned, radii, strict=True))
+    return DrawnRun(tuple(legs), corners, true, radii, turns, matrix, scale, scale_text, shift)
