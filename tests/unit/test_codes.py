@@ -95,6 +95,14 @@ def test_a_factor_above_1_is_for_mild_ferrous_steel_below_371_degC(material, hot
     assert any("the code permits 1.0" in r.words() for r in outcome.remarks) is not permitted
 
 
+@pytest.mark.parametrize("key", EDITIONS)
+@pytest.mark.parametrize(("f_m", "expected"), [(1.0, 1.25 * 190e6 + 0.25 * 180e6), (1.2, 1.2 * 1.5 * 138e6)])
+def test_allowables_are_capped_only_where_f_exceeds_1(key, f_m, expected):
+    """A strong steel at f = 1 keeps its S_c and S_h; above, both are at most 138 MPa."""
+    pool = {"N": 1000.0, "f_m": f_m, "S_c": 190e6, "S_h": 180e6}
+    assert follow(code(key).allowable_range, pool, PLAIN) == pytest.approx(expected)
+
+
 def test_no_greater_factor_unless_asked(line):
     assert solve(line(duty={"cycles": 1000}), "guided_cantilever").results["f"] == 1.0
 
