@@ -49,7 +49,7 @@ def square_characteristic(T_w: Any, r_2: Any) -> Any:
     return T_w / r_2
 
 
-@formula("c_f = h**(n_f/6)", ref=f"{_D300} note 7: one flanged end h**(1/6), two h**(1/3)")
+@formula("c_f = h**(n_f/6)", ref=f"{_D300} note 7: one flanged end h to the power 1/6, two 1/3")
 def flange_correction(h: Any, n_f: Any) -> Any:
     """Factor on k and i of a bend with 0, 1 or 2 flanged ends; at most 1."""
     return h ** (n_f / 6)

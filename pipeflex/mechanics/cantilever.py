@@ -13,7 +13,7 @@ from pipeflex.trace import formula
 _KELLOGG = "guided cantilever: M. W. Kellogg Co., Design of Piping Systems, 2nd ed. (1956), from memory, confirm"
 
 
-@formula("delta = y*l**3/c_3", ref="equal force in all parallel legs, each as stiff as 12*E*I/l**3")
+@formula("delta = y*l**3/c_3", ref="equal force in all parallel legs, each as stiff as 12 E I/l³")
 def shared_movement(y: Any, l: Any, c_3: Any) -> Any:
     """Part [m] of the movement y [m] that a leg of length l [m] takes; c_3 is the sum of l^3 over all of them."""
     return y * l**3 / c_3

@@ -42,4 +42,5 @@ def rounded_up(load: Any) -> NDArray[np.float64]:
     """Anchor load [N] rounded up in size to 0.5 kN below 10 kN, 1 kN below 50 kN, 5 kN above (common practice)."""
     size = np.abs(load)
     step = np.select([size < _STEPS[0][0], size < _STEPS[1][0]], [_STEPS[0][1], _STEPS[1][1]], _STEPS[2][1])
-    return np.copysign(np.ceil(np.round(size / step, 9)) * step, load)
+    rounded: NDArray[np.float64] = np.copysign(np.ceil(np.round(size / step, 9)) * step, load)
+    return rounded

@@ -9,6 +9,7 @@ from typing import Any, Final
 
 import numpy as np
 
+from pipeflex.errors import Fault, ScopeError
 from pipeflex.mechanics.beam import Answer, linear, residual
 from pipeflex.methods.basis import Basis, remark
 from pipeflex.methods.beam_loads import Felt, loads_of, plain_loads, settled_loads
@@ -27,6 +28,7 @@ from pipeflex.methods.beam_stress import (
 from pipeflex.methods.beam_trace import show_solution
 from pipeflex.methods.common import held_rigidly, room_check, shoe_check
 from pipeflex.model.design import Design
+from pipeflex.model.layout import SHAPES
 from pipeflex.model.outcome import Check, Load, Movement, Outcome, Remark
 from pipeflex.model.words import Concern, State
 from pipeflex.trace import Calc, follow
@@ -40,6 +42,9 @@ Rows = np.ndarray
 def run(design: Design, basis: Basis, calc: Calc) -> Outcome:
     """Answer of the beam for a column."""
     rows = design.rows or 1
+    if design.layout.leg_count < 2:
+        title = SHAPES[design.layout.shape].title
+        raise ScopeError(Fault("layout.shape", title, allowed="a run with a change of direction"))
     calc.say("Beam flexibility", heading=True)
     factors = corner_factors(design, basis, calc)
     model = build(design, basis, [f["k"] for f in factors], rests=False)
@@ -81,7 +86,7 @@ def run(design: Design, basis: Basis, calc: Calc) -> Outcome:
     movements: tuple[Movement, ...] = ()
     if calc.tracing:
         results["residual"] = _left(answer)
-        calc.say(f"Equilibrium of the run: force left over {_left(answer)[0]:.1e} N for a growth of one.")
+        calc.say(f"Equilibrium of the run: {_balance(answer)}")
         extra = {
             "shapes": shapes_of(design, basis, model, answer),
             "along": stress_along(model, sections, found),
@@ -280,6 +285,13 @@ def _cold_spring(
     }  # fmt: skip
     follow(design.code.cold_spring, pool, calc)
     return {name: pool[name] for name in ("R_m", "R_a")}
+
+
+def _balance(answer: Answer) -> str:
+    """Force left over beside the greatest force of the solution, in words."""
+    greatest = float(np.abs(answer.end_a[:, :3]).max(initial=0.0))
+    part = float(_left(answer)[0]) / greatest if greatest else 0.0
+    return f"the forces on ends and supports add up to nothing within {max(part, 1e-16):.0e} of the greatest."
 
 
 def _left(answer: Answer) -> Rows:

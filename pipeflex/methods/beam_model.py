@@ -1,7 +1,7 @@
 """A design as a run of beams: corners, sections, supports and states for the flexibility engine."""
 
 from collections.abc import Collection
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from typing import Any, Final
 
 import numpy as np
@@ -12,13 +12,13 @@ from pipeflex.mechanics.beam import Break, End, Hold, PointWeight, Run, Section,
 from pipeflex.methods.basis import REFERENCE, Basis
 from pipeflex.model.design import Design
 from pipeflex.model.pipe import Pipe
+from pipeflex.model.standing import CLEAR, guide_count, rest_places
 
 Rows = np.ndarray
 
 _BOW: Final = {"linear": 1.0, "half and half": 4 / np.pi}
 """Curvature over that of an even fall of temperature (first moment of a thin ring, half of it hot)."""
-_CLEAR: Final = 0.25
-"""Part of the spacing that the last guide of a row keeps from the anchor."""
+_HAND: Final = 0.1
 _LEVEL: Final = 1e-6
 
 
@@ -100,6 +100,7 @@ def build(
     stops = _given(design, "line stop")
     springs = _given(design, "spring")
     under = [s for s in _rests(design, basis) if s.tag not in without] if rests else []
+    under = [_beside(s, (*guides, *stops, *springs)) for s in under]
     supports = [_rubbing(s, friction) for s in (*guides, *stops, *springs, *under)]
     corners = layout.corner_points()
     radius = np.stack([np.broadcast_to(layout.corner(i).radius, (rows,)) for i in range(layout.leg_count - 1)])
@@ -195,13 +196,11 @@ def _guides(design: Design) -> list[Support]:
     letters = layout.corner_names()
     for leg, side in ((0, f"before {letters[0]}"), (layout.leg_count - 1, f"after {letters[-1]}")):
         length = lengths[leg]
-        count = 1
         spacing = None if layout.guide_spacing is None else np.broadcast_to(layout.guide_spacing, (rows,))
-        if spacing is not None:
-            count += int(np.max(np.floor((length - first - _CLEAR * spacing) / spacing), initial=0.0))
+        count = guide_count(length, first, spacing)
         for i in range(count):
             off = first if spacing is None else first + i * spacing
-            room = length - (0.0 if spacing is None or not i else _CLEAR * spacing)
+            room = length - (0.0 if spacing is None or not i else CLEAR * spacing)
             exists = off <= room
             off = np.where(exists, off, room * (1 - 1e-6 * (count - i)))
             hold = Hold(direction="lateral", stiffness=np.where(exists, layout.guide_stiffness, 0.0), gap=gap)
@@ -220,7 +219,7 @@ def _rests(design: Design, basis: Basis) -> list[Support]:
     lengths, up = basis.lengths[:, 0], basis.vectors[2, :, 0]
     tangents = _tangents(design, basis)
     before = np.concatenate([[0.0], np.cumsum(lengths)])
-    for place in _rest_places(lengths, spacing):
+    for place in rest_places(lengths, spacing):
         leg = min(int(np.searchsorted(before, place, side="right")) - 1, len(lengths) - 1)
         if abs(up[leg]) > _LEVEL * lengths[leg]:
             continue
@@ -231,20 +230,6 @@ def _rests(design: Design, basis: Basis) -> list[Support]:
     return made
 
 
-def _rest_places(lengths: Rows, spacing: float) -> list[float]:
-    """Places of rests along the run: counted from both ends on the outer legs, evenly over what is between."""
-    total = float(lengths.sum())
-    first = [i * spacing for i in range(1, int((lengths[0] - _CLEAR * spacing) / spacing) + 1)]
-    if len(lengths) == 1:
-        count = int(np.ceil(total / spacing - 1e-9))
-        return [total * i / count for i in range(1, count)]
-    last = [i * spacing for i in range(1, int((lengths[-1] - _CLEAR * spacing) / spacing) + 1)]
-    start, end = first[-1] if first else 0.0, total - (last[-1] if last else 0.0)
-    count = int(np.ceil((end - start) / spacing - 1e-9))
-    between = [start + (end - start) * i / count for i in range(1, count)]
-    return [*first, *between, *(total - d for d in reversed(last))]
-
-
 def _tangents(design: Design, basis: Basis) -> list[float]:
     """Length of straight that each corner takes from its legs, with nothing at the ends [m]."""
     along = basis.vectors[:, :, 0] / basis.lengths[:, 0]
@@ -253,6 +238,15 @@ def _tangents(design: Design, basis: Basis) -> list[float]:
         cosine = float(np.clip(along[:, i] @ along[:, i + 1], -1, 1))
         taken.append(float(np.ravel(design.layout.corner(i).radius)[0]) * np.tan(np.arccos(cosine) / 2))
     return [*taken, 0.0]
+
+
+def _beside(rest: Support, others: tuple[Support, ...]) -> Support:
+    """A rest a hand's breadth from a support of another kind at the same bent, so that each keeps its own place."""
+    place = float(np.ravel(rest.distance)[0])
+    for other in others:
+        if other.leg == rest.leg and abs(float(np.ravel(other.distance)[0]) - place) < _HAND / 2:
+            return replace(rest, distance=place - _HAND if place > 2 * _HAND else place + _HAND)
+    return rest
 
 
 def _rubbing(support: Support, friction: float | None) -> Support:

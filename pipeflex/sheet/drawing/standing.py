@@ -6,9 +6,8 @@ from typing import Final, NamedTuple
 import numpy as np
 
 from pipeflex.model.layout import Layout
+from pipeflex.model.standing import guide_count, rest_places
 
-_CLEAR: Final = 0.25
-"""Part of the spacing that the last support of a row keeps from the anchor, common practice."""
 _MOST: Final = 3000
 
 
@@ -41,8 +40,7 @@ def _guides(layout: Layout, lengths: np.ndarray) -> Iterator[Standing]:
         return
     for leg in (0, len(lengths) - 1):
         length, off = float(lengths[leg]), float(nearest)
-        count = 1 if spacing is None else 1 + max(0, int((length - off - _CLEAR * spacing) / spacing))
-        for i in range(min(count, _MOST)):
+        for i in range(min(guide_count(length, off, spacing), _MOST)):
             away = off + i * float(spacing or 0.0)
             yield Standing("guide", "", leg, length - away if leg == 0 else away, float(layout.guide_gap))
 
@@ -51,19 +49,7 @@ def _rests(layout: Layout, lengths: np.ndarray, spacing: float) -> Iterator[Stan
     """Counted from both ends on the outer legs, evenly over what is between, on level legs only."""
     level = np.abs(layout.leg_vectors()[2, :, 0]) < 1e-6 * lengths
     before = np.concatenate([[0.0], np.cumsum(lengths)])
-    total = float(before[-1])
-    if len(lengths) == 1:
-        count = int(np.ceil(total / spacing - 1e-9))
-        places = [total * i / count for i in range(1, count)]
-    else:
-        near, far = (
-            [i * spacing for i in range(1, int((length - _CLEAR * spacing) / spacing) + 1)]
-            for length in (lengths[0], lengths[-1])
-        )
-        start, end = (near or [0.0])[-1], total - (far or [0.0])[-1]
-        count = int(np.ceil((end - start) / spacing - 1e-9))
-        places = [*near, *(start + (end - start) * i / count for i in range(1, count)), *(total - d for d in far)]
-    for place in places[:_MOST]:
+    for place in rest_places(lengths, spacing)[:_MOST]:
         leg = min(int(np.searchsorted(before, place, side="right")) - 1, len(lengths) - 1)
         if level[leg]:
             yield Standing("rest", "", leg, float(place - before[leg]), 0.0)
