@@ -1,7 +1,7 @@
 """Records of an answer: complete, or not made at all. Numbers carry a row axis last."""
 
 from collections.abc import Mapping
-from dataclasses import dataclass, fields, replace
+from dataclasses import dataclass, replace
 from typing import Any, Self
 
 import numpy as np
@@ -18,15 +18,16 @@ Rows = Any
 class _Row:
     """Picks one row out of every array of a frozen answer record."""
 
-    __slots__ = ()
+    __slots__: tuple[str, ...] = ()
 
     def row(self, i: int) -> Self:
-        changes = {}
-        for f in fields(self):  # type: ignore[arg-type]
-            value = getattr(self, f.name)
+        made = object.__new__(type(self))
+        for name in type(self).__slots__:
+            value = getattr(self, name)
             if isinstance(value, np.ndarray) and value.dtype != object:
-                changes[f.name] = value[..., i].item() if value.ndim == 1 else value[..., i]
-        return replace(self, **changes)  # type: ignore[type-var]
+                value = value[..., i].item() if value.ndim == 1 else value[..., i]
+            object.__setattr__(made, name, value)
+        return made
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
