@@ -8,7 +8,6 @@ from pipeflex.codes.b31_3 import (
     cold_allowable,
     cold_allowable_capped,
     range_factor_2018,
-    range_with_unused_sustained,
 )
 from pipeflex.errors import MissingInput
 from pipeflex.formulas import FORMULAS, Choice, StepTable, formula_of, pick
@@ -16,7 +15,7 @@ from pipeflex.mechanics.cantilever import cantilever_stress, leg_needed
 from pipeflex.mechanics.section import line_weight
 from pipeflex.trace import PLAIN, Given, Said, Stepped, Tabled, Trace, Worked, follow
 
-EQ_1B = Choice("S_h > S_L", range_with_unused_sustained, allowable_range)
+CAP = Choice("f > 1", cold_allowable_capped, cold_allowable)
 STEPS = StepTable("f", "N", limits=(7000, 14000, 22000), values=(1.0, 0.9, 0.8, 0.7), ref="a step table")
 
 
@@ -59,32 +58,24 @@ def test_a_symbol_has_one_value_in_a_trace():
         trace(range_factor_2018, N=np.array([1e6]), f_m=np.array([1.0]))
 
 
-@pytest.mark.parametrize(("S_h", "holds", "expected"), [(9.0, True, 30.25), (5.0, False, 26.25)])
-def test_a_choice_keeps_its_condition_and_the_branch_that_ran(S_h, holds, expected):
-    pool = one(f=1.0, S_c_used=20.0, S_h_used=S_h, S_h=S_h, S_L=6.0)
+@pytest.mark.parametrize(("f", "holds", "expected"), [(1.2, True, 138e6), (1.0, False, 190e6)])
+def test_a_choice_keeps_its_condition_and_the_branch_that_ran(f, holds, expected):
     trace = Trace()
-    symbol, value = trace.rule(EQ_1B, pool)
-    assert (symbol, value[0]) == ("S_A", expected)
+    symbol, value = trace.rule(CAP, one(f=f, S_c=190e6))
+    assert (symbol, value[0]) == ("S_c_used", expected)
     (step,) = trace.steps
     assert step.condition.holds is holds
-    assert step.condition.args == (("S_h", S_h), ("S_L", 6.0))
-    assert step.formula is formula_of(range_with_unused_sustained if holds else allowable_range)
+    assert step.condition.args == (("f", f),)
+    assert step.formula is formula_of(cold_allowable_capped if holds else cold_allowable)
 
 
 def test_a_choice_goes_row_by_row_in_a_column():
-    S_h = np.array([9.0, 5.0, 6.0])
-    pool = {"f": 1.0, "S_c_used": 20.0, "S_h_used": S_h, "S_h": S_h, "S_L": 6.0}
-    _, column = PLAIN.rule(EQ_1B, pool)
-    assert column.tolist() == [1.25 * 29.0 - 6.0, 25.0 + 0.25 * 5.0, 25.0 + 0.25 * 6.0]
+    """Capped only where f exceeds 1, and as each row alone."""
+    pool = {"f": np.array([1.0, 1.2, 0.9]), "S_c": np.array([190e6, 190e6, 120e6])}
+    _, column = PLAIN.rule(CAP, pool)
+    assert column.tolist() == [190e6, 138e6, 120e6]
     for i in range(3):
-        row = {k: np.atleast_1d(np.broadcast_to(v, 3)[i]) for k, v in pool.items()}
-        assert Trace().rule(EQ_1B, row)[1][0] == column[i]
-
-
-def test_a_choice_of_the_code_caps_only_where_f_exceeds_1():
-    cap = Choice("f > 1", cold_allowable_capped, cold_allowable)
-    _, values = PLAIN.rule(cap, {"f": np.array([1.0, 1.2]), "S_c": np.array([190e6, 190e6])})
-    assert values.tolist() == [190e6, 138e6]
+        assert Trace().rule(CAP, {k: v[i : i + 1] for k, v in pool.items()})[1][0] == column[i]
 
 
 def test_a_step_table_holds_its_value_up_to_the_limit():
