@@ -75,7 +75,7 @@ ONE_FAULT = {
     "bare days": ('"5 .. 35 degC"', "5", "duty.installed", '"5 .. 35 degC"'),
     "unlimited heat": ('"240 degC"', '"unlimited"', "duty.cases.operating.temperature", "a temperature in"),
     "point in a case": ("cases.operating", 'cases."a.b"', "duty.cases.a.b.name", "a name without a point"),
-    "a case as text": ('[duty.cases.operating]\ntemperature = "240 degC"', 'cases.operating = "240 degC"',
+    "a case as text": ('[duty.cases.operating]\ntemperature = "240 degC"\ntop_to_bottom_form = "linear"', 'cases.operating = "240 degC"',
                        "duty.cases.operating", "a table"),
     "a case named twice": ('temperature = "240 degC"', 'temperature = "240 degC"\nname = "hot"',
                            "duty.cases.operating.name", "temperature"),
