@@ -22,7 +22,7 @@ from pipeflex.mechanics.beam import (
     settle,
     support_movements,
 )
-from pipeflex.mechanics.beam.contact import Balance, Laws, balance
+from pipeflex.mechanics.beam.contact import Balance, Contacts, Laws
 
 FREE = End(stiffness=(0.0,) * 6)
 REST = Hold(direction="vertical", lifts=True)
@@ -429,10 +429,12 @@ def test_a_step_does_not_depend_on_its_start(seed):
     )
     closed, slid = rng.normal(0, 1e4, n), np.zeros(n)
     limit = np.repeat(rng.uniform(0, 2e4, n // 2), 2)
-    found = [
-        balance(laws, stiffness, closed, slid, limit, Balance(scale * rng.normal(0, 0.01, n), scale * rng.normal(0, 1e4, n), 0.0, 0, True))
+    contacts = Contacts(laws, stiffness)
+    starts = [
+        Balance(scale * rng.normal(0, 0.01, n), scale * rng.normal(0, 1e4, n), 0.0, 0, True)
         for scale in (0.0, 1.0, 30.0)
-    ]  # fmt: skip
+    ]
+    found = [contacts.balance(closed, slid, limit, start) for start in starts]
     for one in found:
         assert one.exact
         assert one.u == pytest.approx(found[0].u, abs=1e-9)

@@ -85,7 +85,7 @@ def test_supports_that_change_their_order_from_row_to_row():
         Support(leg=0, distance=np.array([2.0, 2.0]), holds=(Hold(),), tag="one"),
         Support(leg=0, distance=np.array([3.0, 1.0]), holds=(Hold(),), tag="two"),
     ]
-    with pytest.raises(InputError, match="support one, support two.*row 1"):
+    with pytest.raises(InputError, match=r"support one, support two.*row 1"):
         build(np.repeat(L_RUN[:, :, None], 2, axis=2), supports=guides)
 
 

@@ -17,7 +17,7 @@ from numpy.typing import NDArray
 
 from pipeflex.errors import Fault, InputError, refuse
 from pipeflex.mechanics.beam.compliance import Array, Indices, cross
-from pipeflex.mechanics.beam.contact import Balance, Laws, balance
+from pipeflex.mechanics.beam.contact import Balance, Contacts, Laws
 from pipeflex.mechanics.beam.elements import (
     Elements,
     Holds,
@@ -117,6 +117,7 @@ def settle(run: Run, states: States, steps: int = 8) -> Settled:
         return _pressing(model, plain, one.force)
 
     laws = model.laws
+    contacts = Contacts(laws, stiffness)
     now = Balance(np.zeros(len(stiffness)), np.zeros(len(laws.dof)), 0.0, 0, True)
     slid = np.zeros(len(laws.dof))
     found: list[Balance] = []
@@ -126,7 +127,7 @@ def settle(run: Run, states: States, steps: int = 8) -> Settled:
             before = max(state - 1, 0)
             here = (1.0 - share) * closed[before] + share * closed[state]
             friction = model.friction if state else np.zeros_like(model.friction)
-            now = _step(model, stiffness, here, slid, partial(normal, state, share=share), friction, now)
+            now = _step(model, contacts, here, slid, partial(normal, state, share=share), friction, now)
             slid = np.where(laws.frictional, now.u[laws.dof], 0.0)
             iterations, left, exact = iterations + now.iterations, max(left, now.left), exact and now.exact
         found.append(Balance(now.u, now.force, left, iterations, exact))
@@ -144,7 +145,7 @@ def _pressing(model: _Model, plain: Array, force: Array) -> Array:
 
 def _step(
     model: _Model,
-    stiffness: Array,
+    contacts: Contacts,
     closed: Array,
     slid: Array,
     normal: Callable[[Balance], Array],
@@ -155,7 +156,7 @@ def _step(
     now, used = start, 0
     limit = (friction * normal(now))[model.support]
     for round_ in range(_LIMIT_ROUNDS):
-        now = balance(model.laws, stiffness, closed, slid, limit, now)
+        now = contacts.balance(closed, slid, limit, now)
         used += now.iterations
         wanted = (friction * normal(now))[model.support]
         miss = float(np.abs(wanted - limit).max(initial=0.0))
