@@ -84,8 +84,7 @@ def plain_loads(design: Design, basis: Basis, model: Model, answer: Answer, name
 
 def settled_loads(design: Design, basis: Basis, factors: list[Any]) -> tuple[Felt, Model]:
     """Loads of a single design with its rests, gaps and friction, along two histories: tied in cold, tied in hot."""
-    smooth = build(design, basis, factors, rests=True, friction=0.0)
-    rough = build(design, basis, factors, rests=True)
+    model = build(design, basis, factors, rests=True)
     histories = _histories(design, basis)
     names: list[str] = []
     parts: list[tuple[Parts, Parts, Parts]] = []
@@ -93,16 +92,16 @@ def settled_loads(design: Design, basis: Basis, factors: list[Any]) -> tuple[Fel
     weighed: list[tuple[str, Model, Moments]] = []
     contacts: Answer | None = None
     for labels, states, R_E in histories:
-        without = settle(smooth.run, states, steps=1)  # nothing is locked in without friction
-        with_ = settle(rough.run, states, steps=_STEPS)
+        without = settle(model.run, states, steps=1, rubbing=False)  # nothing is locked in without friction
+        with_ = settle(model.run, states, steps=_STEPS)
         for one, mu in ((without, "without friction"), (with_, "with friction")):
             felt_remarks += _unsettled(one, labels, mu)
         parts.append(_apart(without, with_, R_E))
         names += labels[1:]
         if contacts is None:
             contacts = without.answer
-            weighed.append(("all rests carrying", smooth, moments(contacts)))
-            lifted = _without_lifted(smooth, without, basis, design, factors)
+            weighed.append(("all rests carrying", model, moments(contacts)))
+            lifted = _without_lifted(model, without, basis, design, factors)
             if lifted is not None:
                 weighed.append(lifted)
                 felt_remarks.append(remark("A rest lifts: the sustained stress without it is judged too."))
@@ -111,7 +110,7 @@ def settled_loads(design: Design, basis: Basis, factors: list[Any]) -> tuple[Fel
         for i in range(3)
     ]
     felt = Felt(tuple(names), (joined[0], joined[1]), joined[2], felt_remarks, weighed, contacts)
-    return felt, rough
+    return felt, model
 
 
 def _histories(design: Design, basis: Basis) -> list[tuple[list[str], States, Rows]]:
@@ -173,8 +172,8 @@ def _without_lifted(
     tags = [model.run.supports[i].tag for i in model.rests if gone[i]]
     if not tags:
         return None
-    left = build(design, basis, factors, rests=True, friction=0.0, without=tags)
-    held = settle(left.run, States(strain=np.zeros((1, left.run.pieces, 1)), weight=1.0))
+    left = build(design, basis, factors, rests=True, without=tags)
+    held = settle(left.run, States(strain=np.zeros((1, left.run.pieces, 1)), weight=1.0), rubbing=False)
     return "without the rests that lift", left, moments(held.answer)
 
 

@@ -72,7 +72,6 @@ def build(
     factors: list[Any],
     *,
     rests: bool,
-    friction: float | None = None,
     without: Collection[str] = (),
 ) -> Model:
     """The run of a column.
@@ -81,7 +80,6 @@ def build(
     ----------
     factors : flexibility factor k of each corner, (rows,).
     rests : whether the weight acts, on the rests under the line: they can lift, so only a single design knows them.
-    friction : factor at every shoe instead of the design's own; None takes those.
     without : tags of rests to leave out.
 
     Raises
@@ -101,7 +99,7 @@ def build(
     springs = _given(design, "spring")
     under = [s for s in _rests(design, basis) if s.tag not in without] if rests else []
     under = [_beside(s, (*guides, *stops, *springs)) for s in under]
-    supports = [_rubbing(s, friction) for s in (*guides, *stops, *springs, *under)]
+    supports = (*guides, *stops, *springs, *under)
     corners = layout.corner_points()
     radius = np.stack([np.broadcast_to(layout.corner(i).radius, (rows,)) for i in range(layout.leg_count - 1)])
     run = assemble(
@@ -247,12 +245,6 @@ def _beside(rest: Support, others: tuple[Support, ...]) -> Support:
         if other.leg == rest.leg and abs(float(np.ravel(other.distance)[0]) - place) < _HAND / 2:
             return replace(rest, distance=place - _HAND if place > 2 * _HAND else place + _HAND)
     return rest
-
-
-def _rubbing(support: Support, friction: float | None) -> Support:
-    if friction is None or not support.friction:
-        return support
-    return Support(holds=support.holds, leg=support.leg, distance=support.distance, friction=friction, tag=support.tag)
 
 
 def strains(design: Design, basis: Basis) -> Rows:

@@ -127,7 +127,15 @@ def station_points(made: Elements, station: Indices) -> Array:
 
 
 def holds(run: Run, made: Elements) -> Holds:
-    """Direction, place and softness of every hold."""
+    """Direction, place and softness of every hold; kept for a run of one chunk."""
+    if run.rows > CHUNK:
+        return _holds(run, made)
+    if "holds" not in run.cache:
+        run.cache["holds"] = _holds(run, made)
+    return run.cache["holds"]  # type: ignore[return-value]
+
+
+def _holds(run: Run, made: Elements) -> Holds:
     given: list[tuple[int, Hold]] = [(i, hold) for i, s in enumerate(run.supports) for hold in s.holds]
     support = np.array([i for i, _ in given], dtype=np.intp)
     rows = made.end.shape[1]

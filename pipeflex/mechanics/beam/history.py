@@ -8,9 +8,8 @@ J. J. Moreau, Evolution problem associated with a moving convex set, J. Differ. 
 history of dry friction as the limit of implicit steps.
 """
 
-from collections.abc import Callable
-from dataclasses import dataclass
-from functools import partial
+from dataclasses import dataclass, replace
+from typing import NamedTuple
 
 import numpy as np
 from numpy.typing import NDArray
@@ -18,18 +17,11 @@ from numpy.typing import NDArray
 from pipeflex.errors import Fault, InputError, refuse
 from pipeflex.mechanics.beam.compliance import Array, Indices, cross
 from pipeflex.mechanics.beam.contact import Balance, Contacts, Laws
-from pipeflex.mechanics.beam.elements import (
-    Elements,
-    Holds,
-    elements,
-    holds,
-    members,
-    station_points,
-    support_axes,
-)
+from pipeflex.mechanics.beam.elements import Elements, Holds, elements, holds, station_points, support_axes
+from pipeflex.mechanics.beam.influence import Influence, of_holds
 from pipeflex.mechanics.beam.parts import States
 from pipeflex.mechanics.beam.run import Run
-from pipeflex.mechanics.beam.sweep import Answer, free_twists, on_supports, sweep
+from pipeflex.mechanics.beam.sweep import Answer, on_supports
 
 _LIMIT_ROUNDS = 60
 _DAMPED_AFTER = 12
@@ -76,7 +68,21 @@ class _Model:
     friction: Array
 
 
-def settle(run: Run, states: States, steps: int = 8) -> Settled:
+class _Prepared(NamedTuple):
+    """What a run has whatever its history.
+
+    table : answers with every contact held fast or moved; unit : (dof, plain), plain holds' force on the pipe by a
+    unit movement of each contact; pressing : (support, plain and law), which forces press there.
+    """
+
+    model: _Model
+    table: Influence
+    contacts: Contacts
+    unit: Array
+    pressing: Array
+
+
+def settle(run: Run, states: States, steps: int = 8, *, rubbing: bool = True) -> Settled:
     """Follow a history: states in their order, each reached from the one before in equal steps.
 
     The first state is the run as laid: contacts act, friction is still zero.  Heating up, cooling down and heating
@@ -88,6 +94,7 @@ def settle(run: Run, states: States, steps: int = 8) -> Settled:
     run : one row.
     states : the history.
     steps : steps from one state to the next; matters where a movement turns on the way.
+    rubbing : False leaves friction out.
 
     Raises
     ------
@@ -101,64 +108,61 @@ def settle(run: Run, states: States, steps: int = 8) -> Settled:
         (run.rows != 1, Fault("rows", run.rows, "one design at a time")),
         (steps < 1, Fault("steps", steps, "1 or more")),
     )
-    made = elements(run, slice(0, 1))
-    model = _model(run, made, holds(run, made))
-    count = states.count()
-    parts = _closed(run, states, made, model)
-    first = len(model.plain)
-    force = -parts[1][..., 0]
-    closed, stiffness = force[:count, first:], force[count:, first:]
-    stiffness = 0.5 * (stiffness + stiffness.T)
-    by_state, by_u = force[:count, :first], force[count:, :first]
-
-    def normal(state: int, one: Balance, share: float = 1.0) -> Array:
-        before = max(state - 1, 0)
-        plain = (1.0 - share) * by_state[before] + share * by_state[state] + one.u @ by_u
-        return _pressing(model, plain, one.force)
-
-    laws = model.laws
-    contacts = Contacts(laws, stiffness)
-    now = Balance(np.zeros(len(stiffness)), np.zeros(len(laws.dof)), 0.0, 0, True)
+    if "contacts" not in run.cache:
+        run.cache["contacts"] = _prepared(run)
+    ready: _Prepared = run.cache["contacts"]  # type: ignore[assignment]
+    model, laws = ready.model, ready.model.laws
+    first, none = len(model.plain), np.zeros_like(model.friction)
+    force = -ready.table.answer(states).hold_force[..., 0]
+    now = Balance(np.zeros(len(ready.unit)), np.zeros(len(laws.dof)), 0.0, 0, True)
     slid = np.zeros(len(laws.dof))
     found: list[Balance] = []
-    for state in range(count):
+    pressing = []
+    before = force[0]
+    for state, here in enumerate(force):
         iterations, left, exact = 0, 0.0, True
+        friction = model.friction if rubbing and state else none
         for share in np.linspace(0.0, 1.0, steps + 1)[1:] if state else [1.0]:
-            before = max(state - 1, 0)
-            here = (1.0 - share) * closed[before] + share * closed[state]
-            friction = model.friction if state else np.zeros_like(model.friction)
-            now = _step(model, contacts, here, slid, partial(normal, state, share=share), friction, now)
+            at = (1.0 - share) * before + share * here
+            now = _step(ready, at[first:], slid, at[:first], friction, now)
             slid = np.where(laws.frictional, now.u[laws.dof], 0.0)
             iterations, left, exact = iterations + now.iterations, max(left, now.left), exact and now.exact
         found.append(Balance(now.u, now.force, left, iterations, exact))
-    return _settled(run, states, model, parts, normal, found)
+        pressing.append(_pressing(ready, here[:first], now))
+        before = here
+    return _settled(ready, states, np.array(pressing), found, model.friction if rubbing else none)
 
 
-def _pressing(model: _Model, plain: Array, force: Array) -> Array:
+def _prepared(run: Run) -> _Prepared:
+    made = elements(run, slice(0, 1))
+    model = _model(run, made, holds(run, made))
+    first, moving = len(model.plain), len(model.held.station) - len(model.plain)
+    table = of_holds(run, model.held, moving)
+    by_u = -table.table[len(table.table) - moving :, table.places[1][0]]
+    stiffness = by_u[:, first:]
+    pressing = np.zeros((len(model.friction), first + len(model.hold)))
+    pressing[model.held.support[:first], np.arange(first)] = 1.0
+    pressing[model.support, first + np.arange(len(model.hold))] = model.hold >= 0
+    return _Prepared(model, table, Contacts(model.laws, 0.5 * (stiffness + stiffness.T)), by_u[:, :first], pressing)
+
+
+def _pressing(ready: _Prepared, plain: Array, now: Balance) -> Array:
     """What presses on each support: its plain holds and its contacts [N]."""
-    size = len(model.friction)
-    pressing = np.zeros(size)
-    pressing += np.bincount(model.held.support[: len(plain)], np.abs(plain), minlength=size)
-    pressing += np.bincount(model.support, np.where(model.hold >= 0, np.abs(force), 0.0), minlength=size)
+    pressing: Array = ready.pressing @ np.abs(np.concatenate([plain + now.u @ ready.unit, now.force]))
     return pressing
 
 
-def _step(
-    model: _Model,
-    contacts: Contacts,
-    closed: Array,
-    slid: Array,
-    normal: Callable[[Balance], Array],
-    friction: Array,
-    start: Balance,
-) -> Balance:
-    """One step: friction limits and contact forces until they agree."""
-    now, used = start, 0
-    limit = (friction * normal(now))[model.support]
+def _step(ready: _Prepared, closed: Array, slid: Array, plain: Array, friction: Array, start: Balance) -> Balance:
+    """One step: friction limits and contact forces until they agree.
+
+    plain : forces of the plain holds on the pipe with every contact held fast, (plain,) [N].
+    """
+    now, used, support = start, 0, ready.model.support
+    limit = (friction * _pressing(ready, plain, now))[support]
     for round_ in range(_LIMIT_ROUNDS):
-        now = contacts.balance(closed, slid, limit, now)
+        now = ready.contacts.balance(closed, slid, limit, now)
         used += now.iterations
-        wanted = (friction * normal(now))[model.support]
+        wanted = (friction * _pressing(ready, plain, now))[support]
         miss = float(np.abs(wanted - limit).max(initial=0.0))
         if miss <= _LIMIT_EXACT * float(np.abs(now.force).max(initial=0.0)):
             return Balance(now.u, now.force, now.left, used, now.exact)
@@ -242,32 +246,6 @@ def _model(run: Run, made: Elements, held: Holds) -> _Model:
     )
 
 
-def _closed(run: Run, states: States, made: Elements, model: _Model) -> tuple[Array, ...]:
-    """Answers with every contact closed: of the states, then of a unit movement at each contact."""
-    member = members(made, run)
-    count = states.count()
-    free, loads, jumps, moved_a, moved_b = free_twists(run, states, made, member)
-    plain, m = len(model.plain), len(model.held.station) - len(model.plain)
-
-    def padded(values: Array) -> Array:
-        return np.concatenate([values, np.zeros((m, *values.shape[1:]))])
-
-    target = np.zeros((count + m, plain + m, 1))
-    target[count + np.arange(m), plain + np.arange(m)] = 1.0
-    return sweep(
-        run,
-        made,
-        member,
-        model.held,
-        padded(free),
-        None if loads is None else padded(loads),
-        None if jumps is None else padded(jumps),
-        padded(moved_a),
-        padded(moved_b),
-        target,
-    )
-
-
 def _gathered(values: Array, index: Indices, size: int) -> Array:
     """Columns of `values` summed where `index` sends them."""
     sums = np.zeros((len(values), size))
@@ -277,33 +255,27 @@ def _gathered(values: Array, index: Indices, size: int) -> Array:
 
 
 def _settled(
-    run: Run,
-    states: States,
-    model: _Model,
-    parts: tuple[Array, ...],
-    normal: Callable[[int, Balance], Array],
-    found: list[Balance],
+    ready: _Prepared, states: States, pressing: Array, found: list[Balance], friction_factor: Array
 ) -> Settled:
-    count = len(found)
+    model = ready.model
     u = np.array([one.u for one in found])
     force = np.array([one.force for one in found])
-    wrench, closed, end_a, end_b, start = (p[:count] + np.tensordot(u, p[count:], axes=(1, 0)) for p in parts)
-    first = len(model.plain)
+    answer = ready.table.answer(states, u)
+    run, count, first = answer.run, len(found), len(model.plain)
     supports, given = len(run.supports), sum(len(s.holds) for s in run.supports)
+    closed, is_hold = answer.hold_force, model.hold >= 0
+    closed[:, first:, 0] = -_gathered(force, model.laws.dof, closed.shape[1] - first)
     hold_force = np.zeros((count, given, 1))
     hold_force[:, model.plain] = closed[:, :first]
-    is_hold = model.hold >= 0
     hold_force[:, model.hold[is_hold], 0] = -force[:, is_hold]
-    closed[:, first:, 0] = -_gathered(force, model.laws.dof, closed.shape[1] - first)
     squares = _gathered(force[:, ~is_hold] ** 2, model.support[~is_hold], supports)
     pressed = _gathered(np.abs(force[:, is_hold]), model.support[is_hold], supports)
     friction = np.sqrt(squares)
-    pressing = np.array([normal(s, one) for s, one in enumerate(found)]).reshape(count, supports)
     return Settled(
-        answer=Answer(run, states, wrench, hold_force, on_supports(run, model.held, closed), end_a, end_b, start),
+        answer=replace(answer, hold_force=hold_force, support_force=on_supports(run, model.held, closed)),
         friction=friction,
         normal=pressing,
-        slides=(friction > 0) & (friction >= (1.0 - 1e-6) * model.friction * pressing),
+        slides=(friction > 0) & (friction >= (1.0 - 1e-6) * friction_factor * pressing),
         lifted=np.isin(np.arange(supports), model.support[is_hold]) & (pressed == 0.0),
         converged=np.array([one.exact for one in found]),
         left=np.array([one.left for one in found]),
