@@ -8,17 +8,20 @@ the last good entry, and no sheet is written meanwhile. A kind of desk says whic
 
 from __future__ import annotations
 
+import functools
 import os
+import threading
 import time
-from collections.abc import Sequence
+from collections.abc import Callable, Sequence
 from dataclasses import replace
-from typing import Any, ClassVar
+from typing import Any, ClassVar, Concatenate, ParamSpec, TypeVar
 
 import ipywidgets
 
 from pipeflex.desks.answer import Answer, first_answer, settled, whole_answer
 from pipeflex.desks.bound import Bound, Look, home_of
 from pipeflex.desks.documents import Document
+from pipeflex.desks.entries import Entries
 from pipeflex.desks.entry import Button, ChoiceField, EntryField, Headline, Panel
 from pipeflex.desks.following import Following
 from pipeflex.desks.keys import DeskBox, close_tree
@@ -32,8 +35,29 @@ from pipeflex.present import UNIT_SYSTEMS, UnitSystem
 IDLE: float = 0.25
 """How long the user must have been idle before the whole answer is worked out, and each step after it [s]."""
 
+_LATE: float = 2.0
+"""How long the widgets of a desk stay once another has taken over: what was typed last may still be on its way [s]."""
+
 _OPEN: dict[str, Desk] = {}
 """The desk of each design file in this kernel: that of a cell that is run again takes over."""
+
+_TURN = threading.RLock()
+"""JupyterLab may run cells and the callbacks of widgets in two threads: desks do one thing at a time."""
+
+P = ParamSpec("P")
+R = TypeVar("R")
+D = TypeVar("D", bound="Desk")
+
+
+def in_turn(act: Callable[Concatenate[D, P], R]) -> Callable[Concatenate[D, P], R]:
+    """A method of a desk that waits until no other is at work."""
+
+    @functools.wraps(act)
+    def waiting(self: D, *args: P.args, **kwargs: P.kwargs) -> R:
+        with _TURN:
+            return act(self, *args, **kwargs)
+
+    return waiting  # type: ignore[return-value]
 
 
 class Desk:
@@ -47,6 +71,7 @@ class Desk:
 
     title: ClassVar[str]
 
+    @in_turn
     def __init__(self, path: str | os.PathLike[str], units: UnitSystem | None = None) -> None:
         if units not in (None, *UNIT_SYSTEMS):
             raise InputError(Fault("units", str(units), allowed="one of " + ", ".join(UNIT_SYSTEMS)))
@@ -55,21 +80,19 @@ class Desk:
         self.answer: Answer | None = None
         self.problem = self.saved = self.focus = ""
         self.conflict = False
-        self.fields: dict[str, EntryField | ChoiceField] = {}
-        self._bound: dict[str, Bound] = {}
-        self._wrong: dict[str, str] = {}
+        self._entries = Entries(self)
         self._past: list[Design] = []
         self._now = 0
         self._following, self._lights = Following(), Following()
         self._asked = units
         self.look = Look(units or "metric")
         self.box = DeskBox([], self.title)
+        self._successor: Desk | None = None
         before = _OPEN.get(self.file.key)
         self.read_again()
+        _OPEN[self.file.key] = self
         if before is not None:
             self._inherit(before)
-            before.close()
-        _OPEN[self.file.key] = self
 
     # --- what a kind of desk adds --------------------------------------------------------------------
 
@@ -97,83 +120,36 @@ class Desk:
     def field(self, bound: Bound, **how: Any) -> EntryField | ChoiceField:
         """The entry or choice of a binding."""
         path = bound.path
-        options = bound.options(self.held)
-        shared: dict[str, Any] = {"on_focus": lambda on: self._point(path if on else ""), **how}
+        return self._entries.field(bound, self.commit, on_focus=lambda on: self._point(path if on else ""), **how)
 
-        def commit(text: str) -> tuple[bool, str, str]:
-            return self.commit(path, text)
-
-        made: EntryField | ChoiceField
-        if options is None:
-            step = (lambda n: bound.step(self.held, n, self.look.units)) if bound.steps else None
-            made = EntryField("", "", commit, on_step=step, **shared)
-        else:
-            made = ChoiceField("", "", commit, options=options, **shared)
-        self.fields[path], self._bound[path] = made, bound
-        self._refresh(path)
-        return made
-
-    def commit(self, path: str, text: str) -> tuple[bool, str, str]:
-        """Take a committed text: (True, echo, "") where it is read and answered, else (False, "", what is wrong)."""
-        bound, design = self._bound[path], self.held
-        waiting = self._wrong.pop(path, None)
-        try:
-            if text != bound.shown(design, self.look).text:
-                design = bound.read(design, text, self.look.units)
-            self.adopt(replace(design, demo=tuple(p for p in design.demo if p not in bound.paths)))
-        except PipeflexError as error:
-            self._refuse(path, error)
-            return False, "", self._wrong[path]
-        if waiting is not None:
-            self.problem = ""
-            self.show()
-        return True, bound.shown(self.held, self.look).echo, ""
-
-    def _refuse(self, path: str, error: PipeflexError) -> None:
-        """Mark the field of an entry that is not taken; what other fields have to do with it is said as well."""
-        words = []
-        for fault in error.faults:
-            owner = self._owner(fault.field)
-            line = (fault if owner is None else replace(fault, field="")).text(self.look.units)
-            words.append(line if owner in (path, None) else f"{self.fields[owner or path].label}: {line}")
-        self._wrong[path] = "; ".join(words)
-        own = any(self._owner(fault.field) == path for fault in error.faults)
-        self.problem = "" if own else f"{self.fields[path].label}, {words[0]}"
-        self.show()
-
-    def _owner(self, field: str) -> str | None:
-        """Path of the field to which a fault belongs."""
-        for path, bound in self._bound.items():
-            if any(field == p or field.startswith(p + ".") for p in bound.paths):
-                return path
-        return None
+    @property
+    def fields(self) -> dict[str, EntryField | ChoiceField]:
+        """Entries and choices by the paths that they fill."""
+        return self._entries.fields
 
     @property
     def wrong(self) -> tuple[str, ...]:
         """Labels of the fields whose entry is not taken."""
-        return tuple(self.fields[path].label for path in self._wrong)
+        return self._entries.wrong
 
-    def _refresh(self, path: str) -> None:
-        bound, part, design = self._bound[path], self.fields[path], self.held
-        shown = bound.shown(design, self.look)
-        if isinstance(part, ChoiceField):
-            part.options = bound.options(design) or []
-        part.set(
-            label=bound.named(design),
-            text=shown.text,
-            good=shown.text,
-            echo=shown.echo,
-            error="",
-            unit=bound.unit(design, self.look.units),
-            help=bound.explained(design, self.look.units),
-            demo=any(p in design.demo for p in bound.paths),
-        )
-
-    def refresh(self) -> None:
-        """Bring all fields up to date, except those with an entry that was not taken."""
-        for path in self.fields:
-            if path not in self._wrong:
-                self._refresh(path)
+    @in_turn
+    def commit(self, path: str, text: str) -> tuple[bool, str, str]:
+        """Take a committed text: (True, echo, "") where it is read and answered, else (False, "", what is wrong)."""
+        if self._successor is not None:
+            later = self._successor.fields[path]
+            return later.take(text), later.echo, later.error
+        waiting = self._entries.forgive(path)
+        try:
+            self.adopt(self._entries.read(path, text))
+        except PipeflexError as error:
+            said = self._entries.refuse(path, error)
+            self.problem = "" if self._entries.is_about(path, error) else f"{self.fields[path].label}, {said}"
+            self.show()
+            return False, "", said
+        if waiting:
+            self.problem = ""
+            self.show()
+        return True, self._entries.shown(path).echo, ""
 
     def _point(self, path: str) -> None:
         """Light the dimension of the field that has the keyboard."""
@@ -192,6 +168,7 @@ class Desk:
             raise InputError(Fault(self.file.path.name, "not read", allowed="a design file that can be read"))
         return self.design
 
+    @in_turn
     def adopt(self, design: Design, *, remember: bool = True) -> None:
         """Show a design, once it is answered, and save it.
 
@@ -213,37 +190,40 @@ class Desk:
         if not same:
             self.draw()
         self.show()
-        self.refresh()
+        self._entries.refresh()
         self._save()
         if not same:
             self._follow()
 
+    @in_turn
     def undo(self) -> None:
         """Take back the entries that were not taken, or else the last change."""
         self._travel(-1)
 
+    @in_turn
     def redo(self) -> None:
         """Bring a change back that was taken back."""
         self._travel(1)
 
     def can(self, way: int) -> bool:
         """Whether there is a change to take back (-1) or to bring back (1)."""
-        return 0 <= self._now + way < len(self._past) or (way < 0 and bool(self._wrong))
+        return 0 <= self._now + way < len(self._past) or (way < 0 and bool(self.wrong))
 
     def _travel(self, way: int) -> None:
-        if self._wrong:
-            self._wrong.clear()
+        if self.wrong:
+            self._entries.forgive()
             self.problem = ""
-            self.refresh()
+            self._entries.refresh()
             self.show()
         elif self.can(way):
             self._now += way
             self.adopt(self._past[self._now], remember=False)
 
+    @in_turn
     def set_units(self, units: UnitSystem) -> None:
         """Show everything in a unit system; no number changes."""
         self.look = self.look._replace(units=units)
-        self.refresh()
+        self._entries.refresh()
         if self.answer is not None:
             self.draw()
         self.show()
@@ -254,6 +234,7 @@ class Desk:
         steps = (self._complete, self._climb, self._turn)
         self._following.start([(IDLE, shielded(step, self.tell)) for step in steps])
 
+    @in_turn
     def _complete(self) -> None:
         """The whole answer in place of the first."""
         try:
@@ -263,17 +244,20 @@ class Desk:
             raise
         self.show()
 
+    @in_turn
     def _climb(self) -> None:
         if self.answer is not None and self.answer.whole:
             self.answer = replace(self.answer, ladder=ladder(self.held))
             self.show()
 
+    @in_turn
     def _turn(self) -> None:
         if self.answer is not None and self.answer.whole:
             turns = reserve(self.held, key=self.answer.outcome.method)
             self.answer = replace(self.answer, turns=turns, complete=True)
             self.show()
 
+    @in_turn
     def finish(self) -> Answer | None:
         """Work out now what would follow."""
         self._following.stop()
@@ -285,10 +269,11 @@ class Desk:
     @property
     def sure(self) -> bool:
         """Whether the verdict can be shown: everything is read, and no check that follows can change it."""
-        return self.answer is not None and not self._wrong and settled(self.answer)
+        return self.answer is not None and not self.wrong and settled(self.answer)
 
     # --- the file ------------------------------------------------------------------------------------
 
+    @in_turn
     def open(self, path: str | os.PathLike[str]) -> None:
         """Show another design file, found from the folder of this one.
 
@@ -308,10 +293,10 @@ class Desk:
         _OPEN[file.key] = self
         self.read_again()
 
+    @in_turn
     def read_again(self) -> None:
         """Show the file as it is now. What is wrong with it is shown in place of the desk."""
         self._following.stop()
-        self._wrong.clear()
         self.answer, self.conflict, self.saved = None, False, ""
         try:
             design = self.file.read()
@@ -323,7 +308,7 @@ class Desk:
         self.design, self._past, self._now = design, [design], 0
         home = home_of(design)
         self.look = Look(self._asked or home, home)
-        self.fields, self._bound = {}, {}
+        self._entries = Entries(self)
         self._stand(self.compose())
         try:
             self.answer = first_answer(design)
@@ -337,9 +322,7 @@ class Desk:
     def _mark(self, error: PipeflexError) -> None:
         """A design that was read but cannot be answered: its fields are there to be put right."""
         self.problem = error.text(self.look.units)
-        for fault in error.faults:
-            if (path := self._owner(fault.field)) is not None:
-                self.fields[path].error = replace(fault, field="").text(self.look.units)
+        self._entries.mark(error)
         self.show()
 
     def _trouble(self, error: PipeflexError) -> list[ipywidgets.Widget]:
@@ -355,12 +338,18 @@ class Desk:
             close_tree(widget)
 
     def _inherit(self, before: Desk) -> None:
-        """What the desk of an earlier run of the cell knew and the file does not."""
+        """What the desk of an earlier run of the cell knew and the file does not; it hands on what still arrives."""
+        before._following.stop()
         if self._asked is None and before.design is not None:
             self.set_units(before.look.units)
         if self.design is not None and before.design == self.design:
             self._past, self._now = before._past, before._now
             self.show()
+        if before.fields.keys() == self.fields.keys():
+            before._successor = self
+            before._following.start([(_LATE, before.close)])
+        else:
+            before.close()
 
     def _save(self, *, over: bool = False) -> None:
         try:
@@ -371,6 +360,7 @@ class Desk:
             self.problem, self.conflict = error.text(self.look.units), self.file.is_changed_elsewhere
         self.show()
 
+    @in_turn
     def write_over(self) -> None:
         """Save over what another hand has written."""
         self.problem = ""
@@ -386,7 +376,8 @@ class Desk:
 
     def close(self) -> None:
         """Take the desk off the page; its file has everything."""
-        self._following.stop()
+        if self._successor is None:
+            self._following.stop()
         self._lights.stop()
         if _OPEN.get(self.file.key) is self:
             del _OPEN[self.file.key]

@@ -1,12 +1,13 @@
-"""A drawing as a plain plotly figure: one trace for each look, labels as text, colours by their roles."""
+"""A drawing as a plain plotly figure: one trace for each look, labels as text, colours by their roles.
+
+The page finds the colour of a role for its theme: the view must have the palette of `pipeflex.sheet.svg`.
+"""
 
 from itertools import groupby
 from typing import Any, Final
 
 from pipeflex.sheet.drawing.parts import XY, Area, Label, Scene, Stroke
 
-_ROLES: Final = {"faint": "muted", "lit": "ribbon"}
-"""Roles of a drawing that the desks' palette has under another name."""
 _PLACE: Final = {"start": "middle right", "middle": "middle center", "end": "middle left"}
 _ALIGN: Final = {"start": "left", "middle": "center", "end": "right"}
 
@@ -45,7 +46,7 @@ def _look(shape: Area | Stroke) -> tuple[object, ...]:
 
 
 def _colour(role: str, opacity: float = 1.0) -> str:
-    return _ROLES.get(role, role) + (f"/{opacity:g}" if opacity < 1 else "")
+    return role + (f"/{opacity:g}" if opacity < 1 else "")
 
 
 def _run(outlines: list[tuple[XY, ...]], closed: bool) -> tuple[list[float | None], list[float | None]]:

@@ -18,20 +18,25 @@ from pipeflex.desks.core import Desk
 from pipeflex.desks.entry import Band, Button, Headline, Note, Panel, Row
 from pipeflex.desks.figure import figure
 from pipeflex.desks.handing import Handing
+from pipeflex.desks.shield import shielded
 from pipeflex.desks.static import StaticCopy
 from pipeflex.desks.view import PictureView
 from pipeflex.model.words import Verdict
 from pipeflex.sheet import Sheet, scene, svg
 from pipeflex.sheet.headline import headline
 from pipeflex.sheet.scene import VIEWS
+from pipeflex.sheet.svg import COLOURS
 
 _MARKS: Final = {Verdict.FLEXIBLE: "\u2713", Verdict.UNKNOWN: "?"}
 _WAITING: Final = "\u2026"
 _FAILING: Final = "\u2715"
 _DIMENSIONED: Final = ("layout.sizes.", "layout.first_guide", "limits.room")
 """Fields that have a dimension on the drawing."""
-_HEIGHT: Final = 280
-"""Height of the picture [px]."""
+_LOWEST: Final = 294
+"""Height of the picture, so that the first screen is whole in a narrow page [px]."""
+_HIGHEST: Final = 440
+_RISE: Final = 0.4
+"""Height of a wider picture, as a part of its width."""
 _WIDTH: Final = 522
 """Its width until the page tells its own [px]."""
 _SCALE: Final = 3.6
@@ -39,7 +44,7 @@ _SCALE: Final = 3.6
 _NARROWEST: Final = 110.0
 """Least paper of a drawing [mm]."""
 _TITLES: Final = ("title", "project", "date", "revision", "by", "checked")
-_LOADS: Final = "Loads: of the pipe on the steel, unfactored"
+_LOADS: Final = "Loads: pipe on steel, unfactored"
 
 
 class Screen(Desk):
@@ -57,8 +62,8 @@ class Screen(Desk):
     def compose(self) -> Sequence[ipywidgets.Widget]:
         self.view, self.viewpoint, self._lit = "plan", 0, ""
         self.handing = Handing(self)
-        self.picture = PictureView(height=_HEIGHT)
-        self.picture.observe(lambda _: self.draw(), "width")
+        self.picture = PictureView(height=_LOWEST, colours=dict(COLOURS))
+        self.picture.observe(shielded(lambda _: self.draw(), self.tell), "width")
         self.checks = ipywidgets.HTML()
         self.views = {name: Button(name, self._viewer(name), pressed=name == self.view) for name in VIEWS}
         self.turn = Button("turn", self._turn_view, help="the next of four viewpoints", hidden=True)
@@ -79,7 +84,7 @@ class Screen(Desk):
         self.ask = Button("confirm", self._ask, help="the table values from memory that this design uses")
         self.again = Button("Read it again", self.read_again, hidden=True)
         self.over = Button("Write over it", self.write_over, hidden=True)
-        switches = Row(self.memory, self.ask, self.metric, self.us, self.back, self.forth)
+        switches = Row(self.memory, self.ask, Note(), self.metric, self.us, self.back, self.forth)
         self.top = Panel(self.head, switches, Row(self.trouble, self.again, self.over), problem=self.tell)
         return self.top
 
@@ -102,16 +107,19 @@ class Screen(Desk):
         if self.answer is None:
             return
         self._lit = self.focus if self.focus.startswith(_DIMENSIONED) else ""
+        width = self.picture.width or _WIDTH
+        height = int(min(max(_LOWEST, _RISE * width), _HIGHEST))
         made = scene(
             self.answer.outcome,
             self.look.units,
             self.view,
             viewpoint=self.viewpoint,
             focus=self._lit,
-            width=max(_NARROWEST, (self.picture.width or _WIDTH) / _SCALE),
-            height=_HEIGHT / _SCALE,
+            width=max(_NARROWEST, width / _SCALE),
+            height=height / _SCALE,
         )
         with self.picture.hold_sync():
+            self.picture.height = height
             self.picture.scene = figure(made, _SCALE)
             self.picture.description = made.description
         room = f"No room for {', '.join(made.left_out)}. " if made.left_out else ""
@@ -209,7 +217,8 @@ class Screen(Desk):
 
     def _ipython_display_(self) -> None:
         display(self.box)  # type: ignore[no-untyped-call]
-        self.finish()
+        if self.answer is not None and not self.answer.whole:
+            self._complete()
         self.copy = StaticCopy("Static copy of the picture, for readers without a kernel")
         self._show_copy()
 

@@ -167,9 +167,9 @@ def anchor_field(design: Design, i: int) -> Quantity:
 
 
 def _offer_materials(design: Design) -> list[tuple[str, str]]:
-    held = {o.key: o.title for o in offered(design.code.stress_tables, design.pipe.material.expansion_set)}
-    held.setdefault(design.pipe.material.key, design.pipe.material.title)
-    return [(key, f"{key}, {title}" if title and title != key else key) for key, title in held.items()]
+    own = design.pipe.material
+    keys = dict.fromkeys(o.key for o in offered(design.code.stress_tables, own.expansion_set))
+    return [(key, key) for key in {**keys, own.key: None}]
 
 
 def with_material(design: Design, key: str) -> Design:
