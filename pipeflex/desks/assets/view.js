@@ -82,6 +82,10 @@ async function render({model, el}) {
   const draw = () => {
     const width = drawn = Math.floor(el.clientWidth);
     if (!Plotly || !width) return;                  // out of sight: drawn when it comes to light
+    if (model.get("width") !== width) {             // a desk may lay its picture out anew for it
+      model.set("width", width);
+      model.save_changes();
+    }
     const scene = model.get("scene"), roles = model.get("colours"), first = !picture.data;
     const layout = layoutOf(scene, width, model.get("height"));
     new Promise(resolve => {
