@@ -103,13 +103,15 @@ class Contacts:
         self.sums = np.zeros((len(stiffness), count))
         self.sums[laws.dof, np.arange(count)] = 1.0
         self.diagonal = np.arange(len(stiffness))
+        self.pushing = np.flatnonzero(laws.pushes)
+        self.shared = len(np.unique(laws.dof)) < count
         self.rigid = laws.give == 0.0
         self.springs = np.where(self.rigid, 0.0, 1.0 / np.where(self.rigid, 1.0, laws.give))
         diagonal = stiffness.diagonal()[laws.dof]
         self.pipe = 1.0 / np.maximum(diagonal, diagonal[laws.partner])
         self.loose, self.even = self._softness(_LOOSE), self._softness(1.0)
 
-    def balance(self, closed: Array, slid: Array, limit: Array, start: Balance) -> Balance:
+    def balance(self, closed: Array, slid: Array, limit: Array, start: Balance, ahead: Array | float = 0.0) -> Balance:
         """Solve one step.
 
         Parameters
@@ -118,6 +120,7 @@ class Contacts:
         slid : (law,), where friction last let go [m]; 0 for holds.
         limit : (law,), greatest friction [N]; read where frictional.
         start : where to begin; the answer does not depend on it.
+        ahead : movement to expect from there [m]; nor on this.
         """
         if not len(closed):
             return Balance(closed, closed, 0.0, 0, True)
@@ -127,7 +130,7 @@ class Contacts:
             slid - start.u[self.laws.dof],
             np.where(self.laws.frictional, limit, np.inf),
         )
-        u, force, total, share = np.zeros_like(start.u), start.force, 0, _SOFT
+        u, force, total, share = ahead + np.zeros_like(start.u), start.force, 0, _SOFT
         for _ in range(_MULTIPLIER):
             sharp = self._sharp(step, u, force)
             if sharp is not None:
@@ -163,16 +166,16 @@ class Contacts:
         product: Array = a * b
         return product + np.where(self.paired, product[self.laws.partner], 0.0) if len(self.discs) else product
 
-    def _states(self, step: _Step, soft: _Softness, trial: Array) -> tuple[Array, Mask, Mask]:
-        """Size of the trial, which laws give anything at all, and which of them are at their limit."""
+    def _sizes(self, soft: _Softness, trial: Array) -> tuple[Array, Mask]:
+        """Size of the trial, and which laws give anything at all."""
         size = np.sqrt(self._product(trial, trial))
-        acts = (size > soft.dead) & ~(self.laws.pushes & (trial <= 0.0))
-        return size, acts, acts & (size > step.limit)
+        acts = size > soft.dead
+        acts[self.pushing] &= trial[self.pushing] > 0.0
+        return size, acts
 
     def _given(self, step: _Step, soft: _Softness, trial: Array) -> Array:
-        size, acts, slides = self._states(step, soft, trial)
-        least = np.maximum(size, _TINY)
-        kept = np.where(slides, step.limit, least - soft.dead) / least
+        size, acts = self._sizes(soft, trial)
+        kept = np.minimum(size - soft.dead, step.limit) / np.maximum(size, _TINY)
         return np.where(acts, kept * trial, 0.0)
 
     def _stiffened(self, own: Array, discs: Indices, way: Array) -> Array:
@@ -189,26 +192,26 @@ class Contacts:
     def _sharp(self, step: _Step, u: Array, force: Array) -> Balance | None:
         """Newton's method on the conditions themselves; None where it does not end."""
         laws, dof = self.laws, self.laws.dof
+        limit = np.where(laws.frictional, step.limit, 0.0)
+        at_limit = _AT_LIMIT * step.limit
         for used in range(1, _SHARP + 1):
             trial = self._trial(step, self.loose, u, force)
-            size, acts, _ = self._states(step, self.loose, trial)
+            size, acts = self._sizes(self.loose, trial)
             # what turns round sticks first
-            slides = acts & (size >= _AT_LIMIT * step.limit) & (self._product(trial, force) >= 0.0)
+            slides = acts & (size >= at_limit) & (self._product(trial, force) >= 0.0)
             sticks = acts & ~slides
             rigid = np.flatnonzero(sticks & self.rigid)
             fixed = dof[rigid]
-            if len(set(fixed.tolist())) < len(fixed):
+            if self.shared and len(set(fixed.tolist())) < len(fixed):
                 return None
-            # force of a law = push - own (u - slid), for a disc that slides only across its way
+            # force of a law = push - own (u - edge), for a disc that slides only across its way
             way = trial / np.maximum(size, _TINY)
-            push = np.zeros_like(trial)
-            push[slides] = step.limit[slides] * way[slides]
+            push = np.where(slides, limit, 0.0) * way
             own = np.where(sticks, self.springs, 0.0)
             edge = step.slid - laws.gap * way
             discs = self.discs[slides[self.discs]]
-            if len(discs):
-                part = np.minimum(step.limit[discs] / size[discs], _STRAIGHT)
-                own[discs] = part / (1.0 - part) / self.loose.lent[discs]
+            part = np.minimum(step.limit[discs] / size[discs], _STRAIGHT)
+            own[discs] = part / (1.0 - part) / self.loose.lent[discs]
             crossing = np.zeros_like(trial)
             crossing[discs] = own[discs] * way[discs]
             whole = self._stiffened(own, discs, way)
@@ -239,8 +242,9 @@ class Contacts:
             left = float(np.abs(gradient).max())
             if left <= 0.3 * self._accuracy(u, last):
                 return u, left, used
-            size, acts, slides = self._states(step, soft, trial)
-            own = np.where(acts, np.where(slides & ~self.paired, 0.0, 1.0), 0.0) / soft.whole
+            size, acts = self._sizes(soft, trial)
+            slides = acts & (size > step.limit)
+            own = np.where(acts & ~(slides & ~self.paired), 1.0 / soft.whole, 0.0)
             discs = self.discs[slides[self.discs]]
             own[discs] *= step.limit[discs] / size[discs]
             stiffness = self._stiffened(own, discs, trial / np.maximum(size, _TINY))

@@ -115,7 +115,7 @@ def settle(run: Run, states: States, steps: int = 8, *, rubbing: bool = True) ->
     first, none = len(model.plain), np.zeros_like(model.friction)
     force = -ready.table.answer(states).hold_force[..., 0]
     now = Balance(np.zeros(len(ready.unit)), np.zeros(len(laws.dof)), 0.0, 0, True)
-    slid = np.zeros(len(laws.dof))
+    slid, ahead = np.zeros(len(laws.dof)), np.zeros(len(ready.unit))
     found: list[Balance] = []
     pressing = []
     before = force[0]
@@ -124,12 +124,14 @@ def settle(run: Run, states: States, steps: int = 8, *, rubbing: bool = True) ->
         friction = model.friction if rubbing and state else none
         for share in np.linspace(0.0, 1.0, steps + 1)[1:] if state else [1.0]:
             at = (1.0 - share) * before + share * here
-            now = _step(ready, at[first:], slid, at[:first], friction, now)
+            last = now
+            now = _step(ready, at[first:], slid, at[:first], friction, last, ahead)
+            ahead = now.u - last.u
             slid = np.where(laws.frictional, now.u[laws.dof], 0.0)
             iterations, left, exact = iterations + now.iterations, max(left, now.left), exact and now.exact
         found.append(Balance(now.u, now.force, left, iterations, exact))
         pressing.append(_pressing(ready, here[:first], now))
-        before = here
+        before, ahead = here, np.zeros_like(ahead)
     return _settled(ready, states, np.array(pressing), found, model.friction if rubbing else none)
 
 
@@ -152,7 +154,9 @@ def _pressing(ready: _Prepared, plain: Array, now: Balance) -> Array:
     return pressing
 
 
-def _step(ready: _Prepared, closed: Array, slid: Array, plain: Array, friction: Array, start: Balance) -> Balance:
+def _step(
+    ready: _Prepared, closed: Array, slid: Array, plain: Array, friction: Array, start: Balance, ahead: Array
+) -> Balance:
     """One step: friction limits and contact forces until they agree.
 
     plain : forces of the plain holds on the pipe with every contact held fast, (plain,) [N].
@@ -160,7 +164,7 @@ def _step(ready: _Prepared, closed: Array, slid: Array, plain: Array, friction: 
     now, used, support = start, 0, ready.model.support
     limit = (friction * _pressing(ready, plain, now))[support]
     for round_ in range(_LIMIT_ROUNDS):
-        now = ready.contacts.balance(closed, slid, limit, now)
+        now = ready.contacts.balance(closed, slid, limit, now, 0.0 if round_ else ahead)
         used += now.iterations
         wanted = (friction * _pressing(ready, plain, now))[support]
         miss = float(np.abs(wanted - limit).max(initial=0.0))
