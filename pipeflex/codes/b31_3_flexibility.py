@@ -15,9 +15,6 @@ _319_4: Final = "ASME B31.3-2018 and 2022, para. 319.4.4"
 _320_2: Final = "ASME B31.3-2018 and 2022, para. 320.2"
 _319_5: Final = "ASME B31.3-2018 and 2022, para. 319.5.1"
 
-MOST_MITRE: Final = np.radians(22.5)
-"""Greatest half angle of a mitre for which the table holds [rad]."""
-
 
 @formula("r_2 = (D_o - T_w)/2", ref=_D300)
 def mean_radius(D_o: Any, T_w: Any) -> Any:
@@ -155,34 +152,34 @@ def computed_range_to_2008(S_b: Any, S_t: Any) -> Any:
     return np.sqrt(S_b**2 + (2 * S_t) ** 2)
 
 
-@formula("I_i = max(0.75*i_i, 1)", ref=_320_2)
-def sustained_in_plane(i_i: Any) -> Any:
+@formula("I_i = max(0.75*i_Li, 1)", ref=_320_2)
+def sustained_in_plane(i_Li: Any) -> Any:
     """In-plane index of the sustained stress."""
-    return np.maximum(0.75 * i_i, 1)
+    return np.maximum(0.75 * i_Li, 1)
 
 
-@formula("I_o = max(0.75*i_o, 1)", ref=_320_2)
-def sustained_out_of_plane(i_o: Any) -> Any:
+@formula("I_o = max(0.75*i_Lo, 1)", ref=_320_2)
+def sustained_out_of_plane(i_Lo: Any) -> Any:
     """Out-of-plane index of the sustained stress."""
-    return np.maximum(0.75 * i_o, 1)
+    return np.maximum(0.75 * i_Lo, 1)
 
 
-@formula("S_la = (F_x + P*A_i)/A_c", ref=f"{_320_2}: the pressure acts on closed ends")
-def sustained_axial(F_x: Any, P: Any, A_i: Any, A_c: Any) -> Any:
+@formula("S_la = (F_Lx + P*A_i)/A_c", ref=f"{_320_2}: the pressure acts on closed ends")
+def sustained_axial(F_Lx: Any, P: Any, A_i: Any, A_c: Any) -> Any:
     """Sustained axial stress [Pa] of weight and pressure."""
-    return (F_x + P * A_i) / A_c
+    return (F_Lx + P * A_i) / A_c
 
 
-@formula("S_lb = sqrt((I_i*M_i)**2 + (I_o*M_o)**2)/Z_c", ref=_320_2)
-def sustained_bending(I_i: Any, M_i: Any, I_o: Any, M_o: Any, Z_c: Any) -> Any:
+@formula("S_lb = sqrt((I_i*M_Li)**2 + (I_o*M_Lo)**2)/Z_c", ref=_320_2)
+def sustained_bending(I_i: Any, M_Li: Any, I_o: Any, M_Lo: Any, Z_c: Any) -> Any:
     """Sustained bending stress [Pa]."""
-    return np.sqrt((I_i * M_i) ** 2 + (I_o * M_o) ** 2) / Z_c
+    return np.sqrt((I_i * M_Li) ** 2 + (I_o * M_Lo) ** 2) / Z_c
 
 
-@formula("S_lt = M_t/(2*Z_c)", ref=_320_2)
-def sustained_torsion(M_t: Any, Z_c: Any) -> Any:
+@formula("S_lt = M_Lt/(2*Z_c)", ref=_320_2)
+def sustained_torsion(M_Lt: Any, Z_c: Any) -> Any:
     """Sustained torsional stress [Pa]."""
-    return M_t / (2 * Z_c)
+    return M_Lt / (2 * Z_c)
 
 
 @formula("S_L = sqrt((abs(S_la) + S_lb)**2 + (2*S_lt)**2)", ref=_320_2)
@@ -191,19 +188,19 @@ def sustained_stress(S_la: Any, S_lb: Any, S_lt: Any) -> Any:
     return np.sqrt((np.abs(S_la) + S_lb) ** 2 + (2 * S_lt) ** 2)
 
 
-@formula("R_m = R_F*(1 - 2*C_cs/3)*R_E", ref=f"{_319_5} eq. (19)")
+@formula("R_m = R_F*(1 - 2*C_cs/3)*R_E", ref=f"{_319_5}")
 def reaction_hot(R_F: Any, C_cs: Any, R_E: Any) -> Any:
     """Greatest reaction hot [N]; only for two anchors with nothing between."""
     return R_F * (1 - 2 * C_cs / 3) * R_E
 
 
-@formula("C_1 = max(0, 1 - S_h*E_a/(S_E*E_m))", ref=f"{_319_5} eq. (21)")
+@formula("C_1 = max(0, 1 - S_h*E_a/(S_E*E_m))", ref=f"{_319_5}")
 def self_spring(S_h: Any, E_a: Any, S_E: Any, E_m: Any) -> Any:
     """Part of the reaction that stays when the line is cold again, by yielding or relaxation; not below 0."""
     return np.maximum(0, 1 - S_h * E_a / (S_E * E_m))
 
 
-@formula("R_a = R_F*max(C_cs, C_1)", ref=f"{_319_5} eqs. (20), (22): the greater of C R and C_1 R")
+@formula("R_a = R_F*max(C_cs, C_1)", ref=f"{_319_5}: the greater of C R and C_1 R")
 def reaction_cold(R_F: Any, C_cs: Any, C_1: Any) -> Any:
     """Greatest reaction cold [N]; only for two anchors with nothing between."""
     return R_F * np.maximum(C_cs, C_1)

@@ -8,10 +8,10 @@ from numpy.typing import NDArray
 from pipeflex.trace import formula
 
 
-@formula("F_mu = mu*w*L_mu", ref="Coulomb friction of the weight on its supports")
-def friction_force(mu: Any, w: Any, L_mu: Any) -> Any:
-    """Friction [N] of a length L_mu [m] of line that slides on its supports."""
-    return mu * w * L_mu
+@formula("F_mu = mu*(w*L_mu + W_c)", ref="Coulomb friction of the weight on its supports")
+def friction_force(mu: Any, w: Any, L_mu: Any, W_c: Any = 0.0) -> Any:
+    """Friction [N] of a length L_mu [m] of line that slides on its supports, with weights W_c [N] on it."""
+    return mu * (w * L_mu + W_c)
 
 
 @formula("F_a = F_th + F_mu", ref="equilibrium: friction opposes the movement, the anchor takes both")

@@ -14,7 +14,7 @@ from pipeflex.mechanics import expansion, section
 from pipeflex.model.design import Design
 from pipeflex.model.outcome import Remark
 from pipeflex.model.pipe import Curve, Material, Pipe
-from pipeflex.trace import Calc, follow
+from pipeflex.trace import PLAIN, Calc, follow
 
 REFERENCE: Final = 294.15
 """21 degC: where the reference modulus is taken [K] (ASME B31.3 para. 319.4.4)."""
@@ -90,6 +90,7 @@ def basis(design: Design, calc: Calc) -> Basis:
     calc.say("Allowable range", heading=True)
     pool: dict[str, Any] = {**geometry, **growth}
     _allowable(design, pool, calc, remarks)
+    _not_judged(design, pool, remarks)
     vectors = design.layout.leg_vectors()
     pool |= {"vectors": vectors, "lengths": np.sqrt((vectors**2).sum(axis=0)), "apart": vectors.sum(axis=1)}
     taken = {name: pool[name] for name in Basis.__dataclass_fields__ if name in pool}
@@ -128,6 +129,11 @@ def _section(pipe: Pipe, calc: Calc) -> dict[str, Any]:
     )
     w = calc(section.line_weight, m_p=m_p, m_c=m_c, m_ins=m_ins)
     return {"D_o": D_o, "T_w": T_w, "D_i": D_i, "A": A, "I": I, "Z": Z, "w": w, "t_clad": t_clad}
+
+
+def pipe_weight(pipe: Pipe) -> Rows:
+    """Weight per length of a pipe of a column, (rows,) [N/m]."""
+    return np.asarray(_section(pipe, PLAIN)["w"])
 
 
 def _words(pipe: Pipe, curve_of: Callable[[Material], Curve], t: Rows, calc: Calc) -> str:
@@ -222,6 +228,30 @@ def _allowable(design: Design, pool: dict[str, Any], calc: Calc, remarks: list[R
     for one, rows in lookup.members(pipe):
         _remark_stress(design, one, rows, remarks)
     remarks += [remark(text) for text in code.remarks]
+
+
+def _not_judged(design: Design, pool: dict[str, Any], remarks: list[Remark]) -> None:
+    """What no method here computes: said, never left out in silence."""
+    layout = design.layout
+    said = (
+        ("Contents of their own in {names} are not judged: the weight is that of the line's contents.",
+         [c.name for c in design.duty.cases if c.contents_density is not None]),
+        ("The load of a spring is not judged: {names}.",
+         [s.name or "spring" for s in layout.supports if s.kind == "spring" and np.any(np.asarray(s.load) > 0)]),
+        ("Friction of guides and line stops is not judged: {names}.",
+         [s.name or s.kind for s in layout.supports if s.friction is not None and s.kind in ("guide", "line stop")]),
+    )  # fmt: skip
+    remarks += [
+        remark(text.replace("{names}", ", ".join(n)).replace("{", "(").replace("}", ")")) for text, n in said if n
+    ]
+    if layout.pockets == "no" and (np.abs(layout.leg_vectors()[2]) > 1e-6).any():
+        remarks.append(
+            remark("The line rises or falls and may not be pocketed: drains and slope are not judged.", True, True)
+        )
+    if layout.leg_count > 5 and (layout.first_guide is not None or layout.guide_spacing is not None):
+        remarks.append(remark("Guides by distance stand on the two outer legs only; give others one by one."))
+    slender = pool["D_o"] > 100 * pool["T_w"]
+    remarks.append(remark("D/T is above 100: the published bend factors do not hold.", slender, True))
 
 
 def _strength(design: Design) -> float:

@@ -12,12 +12,29 @@ import numpy as np
 from pipeflex.errors import Fault, ScopeError
 from pipeflex.mechanics.beam import Answer, linear, residual
 from pipeflex.methods.basis import Basis, remark
+from pipeflex.methods.beam_checks import (
+    corner_movements,
+    design_load,
+    end_checks,
+    guide_check,
+    moved_along_legs,
+    support_checks,
+    with_cold_spring,
+)
 from pipeflex.methods.beam_loads import Felt, loads_of, plain_loads, settled_loads
-from pipeflex.methods.beam_model import Model, build, case_states, range_states, unit_states
+from pipeflex.methods.beam_model import (
+    Model,
+    build,
+    case_states,
+    modulus_ratio,
+    range_states,
+    unit_states,
+)
 from pipeflex.methods.beam_shape import shapes_of, stress_along
 from pipeflex.methods.beam_stress import (
     Range,
     Sections,
+    Sustained,
     corner_factors,
     sections_of,
     stress_range,
@@ -26,10 +43,17 @@ from pipeflex.methods.beam_stress import (
     trace_sustained,
 )
 from pipeflex.methods.beam_trace import show_solution
-from pipeflex.methods.common import held_rigidly, room_check, shoe_check
+from pipeflex.methods.common import (
+    Outside,
+    anchor_checks,
+    held_rigidly,
+    room_check,
+    shoe_alarm,
+    shoe_check,
+)
 from pipeflex.model.design import Design
 from pipeflex.model.layout import SHAPES
-from pipeflex.model.outcome import Check, Load, Movement, Outcome, Remark
+from pipeflex.model.outcome import Check, Load, Outcome, Remark
 from pipeflex.model.words import Concern, State
 from pipeflex.trace import Calc, follow
 
@@ -51,7 +75,7 @@ def run(design: Design, basis: Basis, calc: Calc) -> Outcome:
     sections = sections_of(design, basis, model, factors)
     answer = linear(model.run, unit_states(rows) if model.uniform else range_states(design, basis))
     found = stress_range(design, sections, answer, basis.e if model.uniform else None)
-    remarks = [*basis.remarks, *_remarks(design, model)]
+    remarks = [*basis.remarks, *_remarks(design, model, calc.tracing)]
     show_solution(design, basis, model, answer, calc)
     felt, owner = _loads(design, basis, model, answer, factors, calc.tracing)
     shown = (sections, found)
@@ -62,19 +86,28 @@ def run(design: Design, basis: Basis, calc: Calc) -> Outcome:
     range_check = _range_check(*shown)
     if design.duty.unused_sustained and not sustained_check.unjudged:
         range_check = _with_unused(design, basis, range_check, sustained_check, calc)
+    shapes = shapes_of(design, basis, model, answer) if calc.tracing else ()
     loads = loads_of(design, owner, felt) if calc.tracing or rows == 1 else _column_loads(design, owner, felt)
+    moved = moved_along_legs(design, shapes) if shapes else None
+    shoe = shoe_check(design, basis, moved)
+    totals = [p.thermal + p.friction + p.weight for p in felt.ends]
+    doubt = "" if felt.converged else "not converged"
+    anchors = anchor_checks(design, felt.states, (totals[0][:, :3], totals[1][:, :3]), doubt)
+    cold = _cold_spring(design, basis, model, answer, shown[1], remarks, calc)
     checks = [
         range_check,
         room_check(design, basis, calc),
-        shoe_check(design, basis),
-        *_anchor_checks(design, felt),
-        *_end_checks(design, felt),
-        _guide_check(design, owner, felt),
+        shoe,
+        *with_cold_spring(design, basis, anchors, cold),
+        *end_checks(design, felt, doubt or ("cold spring moves the reactions" if cold else "")),
+        guide_check(design, owner, felt, doubt),
+        *support_checks(design, owner, felt, doubt),
         sustained_check,
     ]
+    remarks.append(shoe_alarm(design, shoe))
     results = {name: basis.pool[name] for name in ("w", "e", "E_a", "S_A", "f", "I", "Z")}
     results |= {"S_E": range_check.demand} | held_rigidly(design, basis, calc)
-    results |= _cold_spring(design, basis, model, answer, found, remarks, calc)
+    results |= cold | design_load(design, basis, anchors, calc)
     severe = design.code.severe_cyclic
     if severe is not None:
         remarks.append(
@@ -82,18 +115,21 @@ def run(design: Design, basis: Basis, calc: Calc) -> Outcome:
                    "the code asks more.", severe(range_check.demand, range_check.limit, basis.pool["N"]), True)
         )  # fmt: skip
     remarks += felt.remarks
+    outside = Outside(rows)
+    outside.add("The supports did not settle: reactions are not known", not felt.converged)
     extra: dict[str, Any] = {}
-    movements: tuple[Movement, ...] = ()
+    movements = corner_movements(design, shapes)
     if calc.tracing:
         results["residual"] = _left(answer)
         calc.say(f"Equilibrium of the run: {_balance(answer)}")
         extra = {
-            "shapes": shapes_of(design, basis, model, answer),
+            "shapes": shapes,
             "along": stress_along(model, sections, found),
         }
     return Outcome(
         design=design, method=KEY, method_title=TITLE, checks=tuple(checks), loads=loads, movements=movements,
-        results=results, remarks=_whole(remarks, rows), outside=np.zeros(rows, bool), outside_reasons=(), **extra,
+        results=results, remarks=_whole(remarks, rows), outside=outside.mask, outside_reasons=tuple(outside.reasons),
+        **extra,
     )  # fmt: skip
 
 
@@ -103,12 +139,23 @@ def _whole(remarks: list[Remark], rows: int) -> tuple[Remark, ...]:
     )
 
 
-def _remarks(design: Design, model: Model) -> list[Remark]:
+def _has_rests(design: Design) -> bool:
+    return design.layout.rest_spacing is not None or any(s.kind == "rest" for s in design.layout.supports)
+
+
+def _remarks(design: Design, model: Model, single: bool) -> list[Remark]:
     """What this method leaves out of a design."""
-    found = [remark("The range is that of guides without gap and without friction.")]
-    if model.level or not (design.layout.rest_spacing or any(s.kind == "rest" for s in design.layout.supports)):
-        return found
-    found.append(remark("Rests are taken as not holding the line in columns and maps: they can lift."))
+    found = []
+    if model.guides:
+        found.append(remark("The range is that of guides without gap and without friction."))
+    if model.stops and not (single and _has_rests(design)):
+        found.append(remark("Friction on line stops is counted only where rests are given.", True, True))
+    if _has_rests(design) and not single:
+        found.append(remark("Rests, their friction and the sustained stress are judged one design at a time."))
+    if design.layout.weights and not _has_rests(design):
+        found.append(remark("Concentrated weights act by their friction only: no rests are given."))
+    if design.duty.unused_sustained and not (single and _has_rests(design)):
+        found.append(remark("Eq. (1b) was asked: the sustained stress is not known, so eq. (1a) is used."))
     return found
 
 
@@ -116,10 +163,9 @@ def _loads(
     design: Design, basis: Basis, model: Model, answer: Answer, factors: list[dict[str, Any]], single: bool
 ) -> tuple[Felt, Model]:
     """Loads of a single design with rests by its history; of a column, or without rests, by sums of friction."""
-    rests = design.layout.rest_spacing is not None or any(s.kind == "rest" for s in design.layout.supports)
-    if single and rests:
+    if single and _has_rests(design):
         return settled_loads(design, basis, [f["k"] for f in factors])
-    R_E = basis.case_modulus / basis.E_a
+    R_E = modulus_ratio(design, basis)
     if model.uniform:
         return plain_loads(design, basis, model, answer, tuple(c.name for c in design.duty.cases), R_E), model
     states, names = case_states(design, basis)
@@ -146,12 +192,17 @@ def _with_contacts(
     remarks.append(
         remark("With gaps and rests as they act, and without friction, the range is {S}.", S=(found.S_E, "stress"))
     )
-    more = float((found.S_E / found.S_A)[0]) > float((closed[1].S_E / closed[1].S_A)[0])
-    return (sections, found) if more else closed
+    more = float((found.S_E / found.S_A)[0]) > float((closed[1].S_E / closed[1].S_A)[0]) * (1 + 1e-9)
+    if not more:
+        return closed
+    remarks.append(remark("Rests hold the line: the range with gaps and rests as they act governs.", True, True))
+    return sections, found
 
 
 def _with_unused(design: Design, basis: Basis, check: Check, weighed: Check, calc: Calc) -> Check:
     """The range against eq. (1b), with the greatest sustained stress of the run taken at every point."""
+    if design.layout.segments:
+        return check
     pool = {**basis.pool, "S_L": weighed.demand}
     limit = follow(design.code.allowable_range_with_sustained, pool, calc)
     return replace(check, limit=limit, note="eq. (1b), with the unused sustained stress added")
@@ -162,85 +213,6 @@ def _range_check(sections: Sections, found: Range) -> Check:
         key="range", title="Range S_E / S_A", concern=Concern.STRESS, kind="stress", demand=found.S_E,
         limit=found.S_A, places=sections.places, place=found.place, states=f"{State.COLDEST} to {State.HOTTEST}",
     )  # fmt: skip
-
-
-def _anchor_checks(design: Design, felt: Felt) -> list[Check]:
-    """Greatest force of the pipe on each anchor along its leg."""
-    vectors, rows = design.layout.leg_vectors(), design.rows or 1
-    checks = []
-    for i, (parts, leg) in enumerate(zip(felt.ends, (0, -1), strict=True)):
-        along = vectors[:, leg] / np.sqrt((vectors[:, leg] ** 2).sum(axis=0))
-        total = ((parts.thermal + parts.friction + parts.weight)[:, :3] * along).sum(axis=1)
-        name = design.layout.ends[i].name or ("first", "last")[i]
-        place = np.abs(total).argmax(axis=0)
-        checks.append(
-            Check(
-                key=f"anchor {i + 1}", title=f"Anchor {name}, along its leg", concern=Concern.REACTION, kind="force",
-                demand=np.take_along_axis(np.abs(total), place[None], axis=0)[0],
-                limit=np.broadcast_to(design.layout.ends[i].anchor_limit, (rows,)), places=felt.states, place=place,
-                note="thermal and friction together",
-            )
-        )  # fmt: skip
-    return checks
-
-
-def _end_checks(design: Design, felt: Felt) -> list[Check]:
-    """Forces and moments of each end in its nozzle's own directions, where a limit is given."""
-    rows = design.rows or 1
-    checks = []
-    for i, parts in enumerate(felt.ends):
-        end = design.layout.ends[i]
-        limits = (*end.force_limits, *end.moment_limits)
-        if not any(np.isfinite(v).any() for v in limits):
-            continue
-        frame = _frame(end.axis)
-        total = parts.thermal + parts.friction + parts.weight
-        own = np.concatenate([np.einsum("ij,sjr->sir", frame, total[:, n : n + 3]) for n in (0, 3)], axis=1)
-        name = end.name or ("first", "last")[i]
-        for d, limit in enumerate(limits):
-            if not np.isfinite(limit).any():
-                continue
-            place = np.abs(own[:, d]).argmax(axis=0)
-            words = ("along the nozzle", "square to it, level", "square to it, upright")[d % 3]
-            kind = "force" if d < 3 else "moment"
-            title = f"{name}, {kind} {words}" if d < 3 else f"{name}, moment about the direction {words}"
-            checks.append(
-                Check(
-                    key=f"end {i + 1} {kind} {d % 3 + 1}", title=title[0].upper() + title[1:],
-                    concern=Concern.REACTION, kind=kind,
-                    demand=np.take_along_axis(np.abs(own[:, d]), place[None], axis=0)[0],
-                    limit=np.broadcast_to(limit, (rows,)), places=felt.states, place=place,
-                )
-            )  # fmt: skip
-    return checks
-
-
-def _frame(axis: tuple[Any, ...]) -> Rows:
-    """Directions of a nozzle, rows of a matrix: along it, level and square to it, and the third."""
-    first = np.array([float(np.ravel(v)[0]) for v in axis])
-    first = first / np.linalg.norm(first)
-    up = np.array([0.0, 0.0, 1.0]) if abs(first[2]) < 0.999 else np.array([0.0, 1.0, 0.0])
-    level = np.cross(up, first)
-    level /= np.linalg.norm(level)
-    return np.stack([first, level, np.cross(first, level)])
-
-
-def _guide_check(design: Design, model: Model, felt: Felt) -> Check:
-    """Greatest side load of a guide."""
-    rows = design.rows or 1
-    limit = np.broadcast_to(design.limits.guide_limit, (rows,))
-    shared: dict[str, Any] = {
-        "key": "guide", "title": "Guides, side", "concern": Concern.REACTION, "kind": "force", "limit": limit,
-    }  # fmt: skip
-    if not model.guides:
-        return Check(**shared, demand=np.zeros(rows), unjudged="there is no guide")
-    first = [i for i, s in enumerate(model.run.supports) for _ in s.holds]
-    mine = [i for i, s in enumerate(first) if s in model.guides]
-    total = np.abs(felt.holds.thermal + felt.holds.friction)[:, mine]
-    worst = total.max(axis=0)
-    place = worst.argmax(axis=0)
-    tags = tuple(model.run.supports[first[i]].tag for i in mine)
-    return Check(**shared, demand=worst.max(axis=0), places=tags, place=place)
 
 
 def _sustained_check(design: Design, basis: Basis, factors: list[dict[str, Any]], felt: Felt, calc: Calc) -> Check:
@@ -254,16 +226,16 @@ def _sustained_check(design: Design, basis: Basis, factors: list[dict[str, Any]]
         why = "no rests are given" if calc.tracing else "rests are judged one design at a time"
         return Check(**shared, demand=np.zeros(rows), unjudged=why)
     pressure = np.stack([np.broadcast_to(c.pressure, (rows,)) for c in design.duty.cases]).max(axis=0)
-    worst: tuple[Any, ...] | None = None
+    worst: tuple[Sustained, str] | None = None
     for name, model, weighed in felt.weighed:
-        sections = sections_of(design, basis, model, factors)
-        S_L, place, pool = sustained(design, sections, weighed, pressure, 0)
-        if worst is None or float(S_L[0]) > float(worst[0][0]):
-            worst = (S_L, place, pool, sections.places, name)
+        found = sustained(design, sections_of(design, basis, model, factors), weighed, pressure)
+        if worst is None or float((found.S_L / found.S_h)[0]) > float((worst[0].S_L / worst[0].S_h)[0]):
+            worst = (found, name)
     assert worst is not None
-    S_L, place, pool, places, name = worst
-    trace_sustained(design, pool, f"{places[int(place[0])]}, {name}", calc)
-    return Check(**shared, demand=S_L, places=places, place=place, states=name)
+    found, name = worst
+    trace_sustained(design, found, name, calc)
+    shared |= {"limit": found.S_h, "unjudged": "" if felt.converged else "not converged"}
+    return Check(**shared, demand=found.S_L, places=found.places, place=found.place, states=name)
 
 
 def _cold_spring(

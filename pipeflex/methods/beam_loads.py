@@ -12,8 +12,8 @@ import numpy as np
 from pipeflex.mechanics.beam import Answer, Moments, Settled, States, moments, settle
 from pipeflex.mechanics.beam.elements import chunks, elements, holds
 from pipeflex.methods.basis import Basis, remark
-from pipeflex.methods.beam_model import Model, build, end_movements, strains
-from pipeflex.methods.common import direction_words, friction_reach
+from pipeflex.methods.beam_model import Model, bows, build, end_movements, modulus_ratio, strains
+from pipeflex.methods.common import direction_words, side_friction
 from pipeflex.model.design import Design
 from pipeflex.model.outcome import Load, Remark
 from pipeflex.model.words import State
@@ -48,6 +48,7 @@ class Felt:
     remarks: list[Remark] = field(default_factory=list)
     weighed: list[tuple[str, Model, Moments]] = field(default_factory=list)
     """Support states in which weight alone acts, with the moments of its first state."""
+    converged: bool = True
     contacts: Answer | None = None
     """A frictionless history, gaps and rests as they act; weight in all states."""
 
@@ -66,8 +67,7 @@ def plain_loads(design: Design, basis: Basis, model: Model, answer: Answer, name
 
     both = [scaled(answer.end_a), scaled(answer.end_b)]
     held = scaled(answer.hold_force)
-    reach = friction_reach(basis)
-    rub = np.asarray(design.layout.friction) * basis.w * reach
+    rub = side_friction(design, basis)
     ends = []
     for thermal, leg, force in zip(both, (0, -1), rub, strict=True):
         t = np.repeat(thermal, 2, axis=0)
@@ -91,25 +91,31 @@ def settled_loads(design: Design, basis: Basis, factors: list[Any]) -> tuple[Fel
     felt_remarks: list[Remark] = []
     weighed: list[tuple[str, Model, Moments]] = []
     contacts: Answer | None = None
+    unsettled = False
     for labels, states, R_E in histories:
         without = settle(model.run, states, steps=1, rubbing=False)  # nothing is locked in without friction
         with_ = settle(model.run, states, steps=_STEPS)
         for one, mu in ((without, "without friction"), (with_, "with friction")):
-            felt_remarks += _unsettled(one, labels, mu)
+            told = _unsettled(one, labels, mu)
+            unsettled = unsettled or bool(told)
+            felt_remarks += told
         parts.append(_apart(without, with_, R_E))
         names += labels[1:]
+        first = len(design.duty.cases)
+        parts.append(_frictionless(parts[-1], first))
+        names += [f"{label}, without friction" for label in labels[1 : first + 1]]
         if contacts is None:
             contacts = without.answer
             weighed.append(("all rests carrying", model, moments(contacts)))
-            lifted = _without_lifted(model, without, basis, design, factors)
-            if lifted is not None:
-                weighed.append(lifted)
-                felt_remarks.append(remark("A rest lifts: the sustained stress without it is judged too."))
+        lifted = _without_lifted(model, without, basis, design, factors)
+        if lifted is not None:
+            weighed.append(lifted)
+            felt_remarks.append(remark("A rest lifts: the sustained stress without it is judged too."))
     joined = [
         Parts(*(np.concatenate([getattr(p[i], n) for p in parts]) for n in ("thermal", "friction", "weight")))
         for i in range(3)
     ]
-    felt = Felt(tuple(names), (joined[0], joined[1]), joined[2], felt_remarks, weighed, contacts)
+    felt = Felt(tuple(names), (joined[0], joined[1]), joined[2], felt_remarks, weighed, not unsettled, contacts)
     return felt, model
 
 
@@ -119,7 +125,7 @@ def _histories(design: Design, basis: Basis) -> list[tuple[list[str], States, Ro
     cases, ties = every[:-2], every[-2:]
     move_a, move_b = end_movements(design)
     order = np.argsort(-cases[:, 0, 0], kind="stable").tolist()
-    R = basis.case_modulus / basis.E_a
+    R = modulus_ratio(design, basis)
     found = []
     for tie, going, day in ((0, order, "coldest"), (1, order[::-1], "hottest")):
         visits = [*going, going[0]] if len(going) > 1 else going
@@ -131,8 +137,13 @@ def _histories(design: Design, basis: Basis) -> list[tuple[list[str], States, Ro
             before = cases[c, 0, 0]
         names.append(f"{State.INSTALLED} again, tied in on the {day} day")
         still, cold = np.zeros((1, 6, 1)), np.zeros((1, *ties.shape[1:]))
+        bow = bows(design)
+        if bow is not None:
+            level = np.zeros((1, *bow.shape[1:]))
+            bow = np.concatenate([level, bow[visits], level])
         states = States(
             strain=np.concatenate([cold, cases[visits] - ties[tie], cold]),
+            bow=bow,
             weight=1.0,
             movement_a=np.concatenate([still, move_a[visits], still]),
             movement_b=np.concatenate([still, move_b[visits], still]),
@@ -153,6 +164,12 @@ def _apart(without: Settled, with_: Settled, R_E: Rows) -> tuple[Parts, Parts, P
 
     a, b = without.answer, with_.answer
     return part(a.end_a, b.end_a), part(a.end_b, b.end_b), part(a.hold_force, b.hold_force)
+
+
+def _frictionless(parts: tuple[Parts, Parts, Parts], first: int) -> tuple[Parts, Parts, Parts]:
+    """The first states without their friction: where friction relieves a load it must not be counted on."""
+    still = [Parts(p.thermal[:first], np.zeros_like(p.friction[:first]), p.weight[:first]) for p in parts]
+    return still[0], still[1], still[2]
 
 
 def _unsettled(found: Settled, labels: list[str], mu: str) -> list[Remark]:

@@ -11,6 +11,7 @@ from pipeflex.mechanics import section
 from pipeflex.mechanics.beam import Break, End, Hold, PointWeight, Run, Section, States, Support, assemble
 from pipeflex.methods.basis import REFERENCE, Basis
 from pipeflex.model.design import Design
+from pipeflex.model.layout import Support as Standing
 from pipeflex.model.pipe import Pipe
 from pipeflex.model.standing import CLEAR, guide_count, rest_places
 
@@ -41,7 +42,7 @@ class Model:
 
 
 @dataclass(slots=True)
-class _Piece:
+class Piece:
     """A stretch of one leg: its pipe, temperature offset, and where it ends (None at the corner)."""
 
     leg: int
@@ -50,19 +51,19 @@ class _Piece:
     end: Any | None
 
 
-def pieces_of(design: Design) -> list[_Piece]:
+def pieces_of(design: Design) -> list[Piece]:
     """The legs, parted where a segment begins or ends."""
-    made: list[_Piece] = []
+    made: list[Piece] = []
     for leg in range(design.layout.leg_count):
         own = sorted((s for s in design.layout.segments if s.leg == leg + 1), key=lambda s: float(np.ravel(s.start)[0]))
         length = design.layout.leg_lengths()[leg]
         for s in own:
             if np.any(np.asarray(s.start) > 0):
-                made.append(_Piece(leg, design.pipe, 0.0, s.start))
+                made.append(Piece(leg, design.pipe, 0.0, s.start))
             whole = bool(np.all(np.asarray(s.end) >= length))
-            made.append(_Piece(leg, s.pipe or design.pipe, s.temperature_offset, None if whole else s.end))
+            made.append(Piece(leg, s.pipe or design.pipe, s.temperature_offset, None if whole else s.end))
         if not own or made[-1].end is not None:
-            made.append(_Piece(leg, design.pipe, 0.0, None))
+            made.append(Piece(leg, design.pipe, 0.0, None))
     return made
 
 
@@ -165,6 +166,11 @@ def _end(design: Design, i: int) -> End:
     return End(stiffness=(*end.stiffness, *end.rotational_stiffness), tag=end.name)
 
 
+def support_tag(one: Standing) -> str:
+    """Name of a support of the design: its own, or what and where it is."""
+    return one.name or f"{one.kind} at {float(np.ravel(one.distance)[0]):.1f} m of leg {one.leg}"
+
+
 def _given(design: Design, kind: str) -> list[Support]:
     """The design's own supports of one kind."""
     direction = {"guide": "lateral", "line stop": "along", "rest": "vertical", "spring": "vertical"}[kind]
@@ -176,7 +182,7 @@ def _given(design: Design, kind: str) -> list[Support]:
         hold = Hold(direction=direction, stiffness=s.stiffness, gap=gap, lifts=kind == "rest")  # type: ignore[arg-type]
         mu = design.layout.friction if s.friction is None else s.friction
         rubs = float(np.max(mu)) if kind == "rest" else 0.0
-        tag = s.name or f"{kind} on leg {s.leg}"
+        tag = support_tag(s)
         made.append(Support(holds=(hold,), leg=s.leg - 1, distance=s.distance, friction=rubs, tag=tag))
     return made
 
@@ -245,6 +251,19 @@ def _beside(rest: Support, others: tuple[Support, ...]) -> Support:
         if other.leg == rest.leg and abs(float(np.ravel(other.distance)[0]) - place) < _HAND / 2:
             return replace(rest, distance=place - _HAND if place > 2 * _HAND else place + _HAND)
     return rest
+
+
+def modulus_ratio(design: Design, basis: Basis) -> Rows:
+    """Modulus of each case over E_a, the greatest of all pieces, (cases, rows)."""
+    best: Rows = basis.case_modulus / basis.E_a
+    rows = design.rows or 1
+    for p in pieces_of(design):
+        if p.pipe is design.pipe and not np.any(p.offset):
+            continue
+        E_a = _modulus(p.pipe, np.full(rows, REFERENCE))
+        hot = [_modulus(p.pipe, np.broadcast_to(c.temperature, (rows,)) + p.offset) for c in design.duty.cases]
+        best = np.maximum(best, np.stack(hot) / E_a)
+    return best
 
 
 def strains(design: Design, basis: Basis) -> Rows:

@@ -1,19 +1,23 @@
 """Stress ranges and sustained stresses along a run of beams, by the clauses of the design's code."""
 
-from dataclasses import dataclass, replace
-from typing import Any
+from dataclasses import dataclass
+from typing import Any, Final
 
 import numpy as np
 
-from pipeflex.errors import Fault, ScopeError
+from pipeflex.errors import Fault, InputError, ScopeError, refuse
 from pipeflex.mechanics import section
 from pipeflex.mechanics.beam import Answer, Moments, moments
 from pipeflex.methods.basis import Basis, basis
-from pipeflex.methods.beam_model import Model, pieces_of
+from pipeflex.methods.beam_model import Model, Piece, pieces_of
 from pipeflex.model.design import Design
 from pipeflex.trace import PLAIN, Calc, Matrix, follow
 
 Rows = np.ndarray
+
+
+AXIAL_ONE: Final = ("bend", "square", "closely spaced mitre", "widely spaced mitre")
+"""Corners whose axial stress intensification is 1 (ASME B31.3 para. 319.4.4); of others it is i_o."""
 
 
 @dataclass(slots=True, kw_only=True)
@@ -29,8 +33,10 @@ class Sections:
     A_c: Rows
     A_i: Rows
     S_A: Rows
+    S_h: Rows
     i_i: Rows
     i_o: Rows
+    i_a: Rows
     places: tuple[str, ...]
 
 
@@ -47,6 +53,11 @@ def corner_factors(design: Design, basis: Basis, calc: Calc) -> list[dict[str, A
             "D_o": basis.D_o, "T_w": basis.T_w, "R": corner.radius, "n_f": corner.flanges, "theta": corner.half_angle,
             "s_m": corner.spacing, "i_fix": np.full_like(basis.D_o, design.code.options.get(f"i {corner.kind}", 1.0)),
         }  # fmt: skip
+        close = corner.kind == "closely spaced mitre"
+        r_2 = (basis.D_o - basis.T_w) / 2
+        permitted = "below r (1 + tan of the half angle)"
+        fault = Fault(f"layout.corners.{i}.spacing", corner.spacing, permitted, "pipe dimension")
+        refuse(InputError, (close & (np.asarray(corner.spacing) >= r_2 * (1 + np.tan(corner.half_angle))), fault))
         same = i and all(corner is layout.corner(j) for j in range(i))
         if same:
             found.append(found[0])
@@ -75,34 +86,48 @@ def sections_of(design: Design, start: Basis, model: Model, factors: list[dict[s
     """What the stresses of every element need."""
     plan, rows = model.run.plan, design.rows or 1
     pieces = pieces_of(design)
-    numbers = [_piece(design, start, p.pipe) for p in pieces]
-    Z, A, Z_c, A_c, A_i, S_A = (np.stack([n[j] for n in numbers])[plan.piece] for j in range(6))
-    i_i, i_o = np.ones((3, len(plan.leg), rows)), np.ones((3, len(plan.leg), rows))
+    numbers = [_piece_numbers(design, start, p) for p in pieces]
+    Z, A, Z_c, A_c, A_i, S_A, S_h = (np.stack([n[j] for n in numbers])[plan.piece] for j in range(7))
+    i_i, i_o, i_a = (np.ones((3, len(plan.leg), rows)) for _ in range(3))
     for e, bend in enumerate(plan.bend):
         if bend >= 0:
             i_i[:, e], i_o[:, e] = factors[bend]["i_i"], factors[bend]["i_o"]
+            for allowable in (S_A, S_h):  # a bend is of both its neighbours: the weaker one counts
+                allowable[e] = np.minimum(allowable[e], allowable[e + 1])
     for corner, f in enumerate(factors):
         if (plan.bend == corner).any():
             continue
         last = np.flatnonzero(plan.leg == corner)[-1]
+        if design.layout.corner(corner).kind not in AXIAL_ONE:
+            i_a[2, last] = i_a[0, last + 1] = f["i_o"]
         i_i[2, last], i_o[2, last] = f["i_i"], f["i_o"]
         i_i[0, last + 1], i_o[0, last + 1] = f["i_i"], f["i_o"]
     return Sections(
-        Z=Z, A=A, Z_c=Z_c, A_c=A_c, A_i=A_i, S_A=S_A, i_i=i_i, i_o=i_o, places=_places(design, model)
+        Z=Z, A=A, Z_c=Z_c, A_c=A_c, A_i=A_i, S_A=S_A, S_h=S_h, i_i=i_i, i_o=i_o, i_a=i_a,
+        places=_places(design, model),
     )  # fmt: skip
 
 
-def _piece(design: Design, start: Basis, pipe: Any) -> tuple[Rows, ...]:
+def _piece_numbers(design: Design, start: Basis, piece: Piece) -> tuple[Rows, ...]:
+    """Section and allowables of one piece, by its own metal and its own temperatures."""
+    pipe = piece.pipe
     D_o, T_w, c = pipe.outside_diameter, pipe.wall, pipe.corrosion_allowance
     D_i = section.inside_diameter(D_o, T_w)
     D_c = D_i + 2 * c
     A, A_c = section.metal_area(D_o, D_i), section.metal_area(D_o, D_c)
     Z = section.section_modulus(section.second_moment(D_o, D_i), D_o)
     Z_c = section.section_modulus(section.second_moment(D_o, D_c), D_o)
-    own = start.S_A if pipe is design.pipe else basis(replace(design, pipe=pipe).column(), PLAIN).S_A
+    own = start if pipe is design.pipe and not np.any(piece.offset) else basis(_as_if_whole(design, piece), PLAIN)
     shape = (design.rows or 1,)
-    values = (Z, A, Z_c, A_c, np.pi / 4 * D_c**2, own)
+    values = (Z, A, Z_c, A_c, np.pi / 4 * D_c**2, own.S_A, own.S_h)
     return tuple(np.broadcast_to(v, shape) for v in values)
+
+
+def _as_if_whole(design: Design, piece: Piece) -> Design:
+    """The design with the pipe and the temperatures of one piece all along."""
+    duty = design.duty
+    cases = tuple(c.with_raw(temperature=c.temperature + piece.offset) for c in duty.cases)
+    return design.with_raw(pipe=piece.pipe, duty=duty.with_raw(cases=cases))
 
 
 def _places(design: Design, model: Model) -> tuple[str, ...]:
@@ -188,7 +213,7 @@ def _difference(found: Moments, i: int, j: int) -> dict[str, Rows]:
 
 
 def _by_code(design: Design, s: Sections, m: dict[str, Rows]) -> Rows:
-    pool = {**m, "i_i": s.i_i, "i_o": s.i_o, "i_t": 1.0, "i_a": 1.0, "Z": s.Z, "A": s.A}
+    pool = {**m, "i_i": s.i_i, "i_o": s.i_o, "i_t": 1.0, "i_a": s.i_a, "Z": s.Z, "A": s.A}
     return np.asarray(follow(design.code.expansion_stress, pool, PLAIN))
 
 
@@ -196,7 +221,7 @@ def _governing(s: Sections, every: Rows, m: dict[str, Rows]) -> Range:
     rows = every.shape[-1]
     ratio = (every / s.S_A).reshape(-1, rows)
     place = ratio.argmax(axis=0)
-    numbers = {**m, "i_i": s.i_i, "i_o": s.i_o}
+    numbers = {**m, "i_i": s.i_i, "i_o": s.i_o, "i_a": s.i_a}
     for name in ("Z", "A", "S_A"):
         numbers[name] = np.broadcast_to(getattr(s, name), every.shape)
 
@@ -234,7 +259,7 @@ def trace_range(design: Design, sections: Sections, found: Range, calc: Calc) ->
     calc.say(f"Governing point: {sections.places[int(found.place[0])]}")
     for name in ("M_i", "M_o", "M_t", "F_x"):
         calc.given(name, np.abs(found.pool[name]), "beam solution, at the governing point")
-    pool = {**found.pool, **{n: np.abs(found.pool[n]) for n in names}, "i_t": 1.0, "i_a": 1.0}
+    pool = {**found.pool, **{n: np.abs(found.pool[n]) for n in names}, "i_t": 1.0}
     follow(design.code.expansion_stress, pool, calc)
 
 
@@ -248,36 +273,45 @@ def _along(elements: int) -> list[int]:
     return [point * elements + e for e in range(elements) for point in range(3)]
 
 
-def sustained(
-    design: Design, sections: Sections, found: Moments, pressure: Rows, state: int
-) -> tuple[Rows, Rows, dict[str, Rows]]:
-    """Sustained stress of one state of weight at every point; its greatest, where, and the numbers there."""
+@dataclass(slots=True, kw_only=True)
+class Sustained:
+    """Greatest ratio of S_L to S_h of one support state: values there, (rows,), and the numbers that give them."""
+
+    S_L: Rows
+    S_h: Rows
+    place: Rows
+    places: tuple[str, ...]
+    pool: dict[str, Rows]
+
+
+def sustained(design: Design, sections: Sections, found: Moments, pressure: Rows) -> Sustained:
+    """Sustained stress of weight and pressure in the first state of a support state, at its worst point."""
     s = sections
-    m = {"M_i": found.in_plane[state], "M_o": found.out_plane[state], "M_t": found.torsion[state],
-         "F_x": found.axial[state]}  # fmt: skip
-    pool = {**m, "i_i": s.i_i, "i_o": s.i_o, "Z_c": s.Z_c, "A_c": s.A_c, "A_i": s.A_i, "P": pressure}
+    pool = {
+        "M_Li": found.in_plane[0], "M_Lo": found.out_plane[0], "M_Lt": found.torsion[0], "F_Lx": found.axial[0],
+        "i_Li": s.i_i, "i_Lo": s.i_o, "Z_c": s.Z_c, "A_c": s.A_c, "A_i": s.A_i, "P": pressure,
+    }  # fmt: skip
     every = np.asarray(follow(design.code.sustained_stress, dict(pool), PLAIN))
-    flat = every.reshape(-1, every.shape[-1])
+    flat = (every / s.S_h).reshape(-1, every.shape[-1])
     place = flat.argmax(axis=0)
-    there = {
-        k: np.take_along_axis(np.broadcast_to(v, every.shape).reshape(flat.shape), place[None], axis=0)[0]
-        for k, v in pool.items()
-    }
-    return flat.max(axis=0), place, there
+
+    def there(values: Rows) -> Rows:
+        spread = np.broadcast_to(values, every.shape).reshape(flat.shape)
+        return np.asarray(np.take_along_axis(spread, place[None], axis=0)[0])
+
+    return Sustained(
+        S_L=there(every), S_h=there(s.S_h), place=place, places=s.places, pool={k: there(v) for k, v in pool.items()}
+    )
 
 
-def trace_sustained(design: Design, pool: dict[str, Rows], where: str, calc: Calc) -> None:
-    """Ledger of the sustained stress at its governing point; its moments are in a table of their own."""
+def trace_sustained(design: Design, found: Sustained, state: str, calc: Calc) -> None:
+    """Ledger of the sustained stress at its governing point."""
     if not calc.tracing:
         return
-    calc.say(f"Sustained stress, governing point: {where}")
-    names = ("M_i", "M_o", "M_t", "F_x", "P")
-    kinds = ("moment", "moment", "moment", "force", "pressure")
-    calc.show(
-        Matrix(
-            words="moments and axial force of the weight, and pressure", equation="beam solution, weight on its rests",
-            ref=design.code.key, heads=names, kinds=kinds, rows=((where, tuple(float(pool[n][0]) for n in names)),),
-        )
-    )  # fmt: skip
-    value = follow(design.code.sustained_stress, dict(pool), PLAIN)
-    calc.given("S_L", value, "sustained clauses of the code over these numbers")
+    calc.say(f"Sustained stress, governing point: {found.places[int(found.place[0])]}, {state}")
+    corner, corroded = "corner at that point, 1 on a straight", "wall less corrosion allowance"
+    origins = {"P": "greatest of the cases", "Z_c": corroded, "A_c": corroded, "A_i": corroded, "i_Li": corner,
+               "i_Lo": corner}  # fmt: skip
+    beam = "beam solution of the weight on its rests, at that point"
+    pool = {n: calc.given(n, v, origins.get(n, beam)) for n, v in found.pool.items()}
+    follow(design.code.sustained_stress, pool, calc)

@@ -6,7 +6,8 @@ from typing import Any
 import numpy as np
 
 from pipeflex.mechanics import expansion, support
-from pipeflex.methods.basis import Basis, remark
+from pipeflex.mechanics.section import STANDARD_GRAVITY
+from pipeflex.methods.basis import Basis, pipe_weight, remark
 from pipeflex.model.design import Design
 from pipeflex.model.outcome import Check, Remark
 from pipeflex.model.words import Concern, State
@@ -65,29 +66,68 @@ def unseen(design: Design, outside: Outside) -> None:
                      np.asarray(case.top_to_bottom) != 0)  # fmt: skip
     elastic = any(np.isfinite(v).any() for e in layout.ends for v in (*e.stiffness, *e.rotational_stiffness))
     outside.note("Ends are taken as rigid: their stiffness is not judged.", elastic)
-    outside.note("Concentrated weights are not judged.", bool(layout.weights))
+    outside.note("Concentrated weights are judged by their friction only.", bool(layout.weights))
     limits = any(np.isfinite(v).any() for e in layout.ends for v in (*e.force_limits, *e.moment_limits))
     outside.note("Force and moment limits of the ends are not judged.", limits)
     outside.note("Cold spring earns nothing in the range; its reactions are not judged.",
                  np.asarray(duty.cold_spring) > 0)  # fmt: skip
     outside.note("Gap and stiffness of guides are not judged.",
                  layout.first_guide is not None or any(s.kind == "guide" for s in layout.supports))  # fmt: skip
+    outside.note("Limits of single supports are not judged.", any(np.isfinite(s.limit).any() for s in layout.supports))
     outside.note("Springs are not judged.", any(s.kind == "spring" for s in layout.supports))
     outside.note("Eq. (1b) was asked: this method does not know the sustained stress, so eq. (1a) is used.",
                  duty.unused_sustained)  # fmt: skip
     outside.note("The sustained stress of weight and pressure is not judged.", True)
 
 
-def friction_reach(basis: Basis) -> np.ndarray:
-    """Length whose friction reaches each end: its own leg and half of what lies between the outer legs, (2, rows) [m].
+def friction_reach(design: Design, basis: Basis) -> tuple[np.ndarray, np.ndarray]:
+    """Length whose friction reaches each end [m], and what weighs on it beside the line [N], both (2, rows).
 
-    Of an L, which has nothing between, half of the other leg.
+    An end's own leg and half of what lies between the outer legs; of an L, half of the other leg.
     """
-    first, last = basis.lengths[0], basis.lengths[-1]
-    if len(basis.lengths) == 2:
-        return np.stack([first + last / 2, last + first / 2])
-    between = basis.lengths[1:-1].sum(axis=0)
-    return np.stack([first + between / 2, last + between / 2])
+    beside = np.zeros_like(basis.lengths)
+    for one in design.layout.weights:
+        beside[one.leg - 1] += one.mass * STANDARD_GRAVITY
+    for part in design.layout.segments:
+        if part.pipe is not None:
+            beside[part.leg - 1] += (pipe_weight(part.pipe) - basis.w) * (np.asarray(part.end) - part.start)
+
+    def of_sides(values: np.ndarray) -> np.ndarray:
+        first, last = values[0], values[-1]
+        if len(values) == 2:
+            return np.stack([first + last / 2, last + first / 2])
+        between = values[1:-1].sum(axis=0)
+        return np.stack([first + between / 2, last + between / 2])
+
+    return of_sides(basis.lengths), of_sides(beside)
+
+
+def side_friction(design: Design, basis: Basis) -> np.ndarray:
+    """Friction that reaches each end, of its own side only, (2, rows) [N]."""
+    reach, beside = friction_reach(design, basis)
+    return np.asarray(support.friction_force(np.asarray(design.layout.friction), basis.w, reach, beside))
+
+
+def anchor_checks(design: Design, states: tuple[str, ...], forces: tuple[Any, Any], unjudged: str = "") -> list[Check]:
+    """Level force of the pipe on both anchors against what they can take.
+
+    forces : of the two ends, (states, 3, rows) [N].
+    """
+    rows = design.rows or 1
+    checks = []
+    for i, (end, force) in enumerate(zip(design.layout.ends, forces, strict=True)):
+        level = np.sqrt(force[:, 0] ** 2 + force[:, 1] ** 2)
+        place = level.argmax(axis=0)
+        checks.append(
+            Check(
+                key=f"anchor {i + 1}", title=f"Anchor {end.name or ('first', 'last')[i]}, level force",
+                concern=Concern.REACTION, kind="force",
+                demand=np.take_along_axis(level, place[None], axis=0)[0],
+                limit=np.broadcast_to(end.anchor_limit, (rows,)), places=states, place=place, unjudged=unjudged,
+                note="" if unjudged else "thermal and friction together",
+            )
+        )  # fmt: skip
+    return checks
 
 
 def room_check(design: Design, basis: Basis, calc: Calc) -> Check:
@@ -109,19 +149,33 @@ def room_check(design: Design, basis: Basis, calc: Calc) -> Check:
     return Check(**shared, demand=taken, limit=limit)
 
 
-def shoe_check(design: Design, basis: Basis) -> Check:
-    """Movement of the run on its shoes: greatest at the corners of the two outer legs."""
-    ends = basis.lengths[[0, -1]]
-    worst = np.abs(basis.case_growth)
-    moved = worst.max(axis=0) * ends
-    place = moved.argmax(axis=0)
-    corners = design.layout.corner_names() or ("the end",)
+def shoe_check(design: Design, basis: Basis, moved: np.ndarray | None = None) -> Check:
+    """Movement of the run on its shoes, along each leg.
+
+    moved : (legs, rows), greatest movement along every leg [m]; without it the growth of the two outer legs, which
+    says nothing of longer chains, segments and imposed movements.
+    """
+    layout, rows = design.layout, design.rows or 1
+    unjudged = ""
+    if moved is None:
+        outer = np.abs(basis.case_growth).max(axis=0) * basis.lengths[[0, -1]]
+        moved = np.concatenate([outer[:1], np.zeros((max(len(basis.lengths) - 2, 0), rows)), outer[1:]])
+        shifted = layout.segments or any(np.any(np.asarray(v) != 0) for c in design.duty.cases
+                                         for v in (*c.first_end_movement, *c.last_end_movement))  # fmt: skip
+        if shifted or (layout.shape == "points" and len(basis.lengths) > 3):
+            unjudged = "only the beam knows it, one design at a time"
     return Check(
-        key="shoe", title="Movement on the shoes", concern=Concern.SHOE, kind="movement",
-        demand=moved.max(axis=0), limit=np.broadcast_to(design.limits.shoe_stop, place.shape),
-        places=(f"corner {corners[0]}", f"corner {corners[-1]}"), place=place,
-        states=f"from {State.INSTALLED}",
+        key="shoe", title="Movement on the shoes", concern=Concern.SHOE, kind="movement", demand=moved.max(axis=0),
+        limit=np.broadcast_to(design.limits.shoe_stop, (rows,)), places=leg_names(design)[: len(moved)],
+        place=moved.argmax(axis=0), states=f"from {State.INSTALLED}", unjudged=unjudged,
     )  # fmt: skip
+
+
+def shoe_alarm(design: Design, check: Check) -> Remark:
+    """Movement beyond the alarm, where shoes have to be looked at."""
+    alarm = np.asarray(design.limits.shoe_alarm)
+    return remark("Movement on the shoes is beyond the alarm of {alarm}: look at the length and place of the shoes.",
+                  ~(np.asarray(check.demand) <= alarm), alarm=(design.limits.shoe_alarm, "movement"))  # fmt: skip
 
 
 def guide_check(design: Design) -> Check:
@@ -139,10 +193,10 @@ def held_rigidly(design: Design, basis: Basis, calc: Calc) -> dict[str, Any]:
     pressure = np.stack([np.broadcast_to(c.pressure, basis.e.shape) for c in design.duty.cases])
     worst = np.abs(basis.case_growth).argmax(axis=0)[None]
     P = np.take_along_axis(pressure, worst, axis=0)[0]
-    e = np.take_along_axis(basis.case_growth, worst, axis=0)[0]
+    e = np.take_along_axis(basis.case_growth - basis.e_P, worst, axis=0)[0]
     E_m = np.take_along_axis(basis.case_modulus, worst, axis=0)[0]
     calc.say("For comparison only: the same run if it were held rigidly at both ends", heading=True)
-    calc.given("e_w", e, "case that moves the line most, from the tie-in day that makes it greatest")
+    calc.given("e_w", e, "case that moves the line most, from the tie-in day that makes it greatest, without pressure")
     S_H = calc(expansion.hoop_stress, P=P, D_o=basis.D_o, T_w=basis.T_w)
     S_x = calc(expansion.held_stress, nu=basis.nu, S_H=S_H, E_m=E_m, e=e, shown={"e": "e_w"})
     F_r = calc(expansion.held_thrust, A=basis.A, S_x=S_x)

@@ -8,7 +8,16 @@ from pipeflex.errors import Fault, ScopeError
 from pipeflex.mechanics import elastic_centre as mechanics
 from pipeflex.methods.basis import Basis
 from pipeflex.methods.beam_stress import corner_factors
-from pipeflex.methods.common import Outside, direction_words, friction_reach, room_check, shoe_check, unseen
+from pipeflex.methods.common import (
+    Outside,
+    anchor_checks,
+    direction_words,
+    room_check,
+    shoe_alarm,
+    shoe_check,
+    side_friction,
+    unseen,
+)
 from pipeflex.model.design import Design
 from pipeflex.model.outcome import Check, Load, Outcome
 from pipeflex.model.words import Concern, State
@@ -53,11 +62,13 @@ def run(design: Design, basis: Basis, calc: Calc) -> Outcome:
     check, pool = _stress(design, basis, found, factors)
     _trace(design, found, pool, calc)
     loads, anchors = _loads(design, basis, found)
+    shoe = shoe_check(design, basis)
     results = {name: basis.pool[name] for name in ("w", "e", "E_a", "S_A", "f", "I", "Z")}
     return Outcome(
         design=design, method=KEY, method_title=TITLE,
-        checks=(check, room_check(design, basis, calc), shoe_check(design, basis), *anchors), loads=loads,
-        movements=(), results=results | {"S_E": check.demand}, remarks=(*basis.remarks, *outside.notes),
+        checks=(check, room_check(design, basis, calc), shoe, *anchors), loads=loads,
+        movements=(), results=results | {"S_E": check.demand},
+        remarks=(*basis.remarks, *outside.notes, shoe_alarm(design, shoe)),
         outside=outside.mask, outside_reasons=tuple(outside.reasons),
     )  # fmt: skip
 
@@ -114,12 +125,12 @@ def _loads(design: Design, basis: Basis, found: mechanics.ElasticCentre) -> tupl
     """Loads on both anchors in every case, friction adding and relieving."""
     share = basis.case_growth * basis.case_modulus / basis.E_a / basis.e
     names = tuple(f"{c.name}, friction {w}" for c in design.duty.cases for w in ("adding", "relieving"))
-    rub = np.asarray(design.layout.friction) * basis.w * friction_reach(basis)
-    loads, checks = [], []
+    rub = side_friction(design, basis)
+    loads: list[Load] = []
+    forces = tuple(np.zeros((len(names), 3, design.rows or 1)) for _ in range(2))
     for i, (sign, leg, moment) in enumerate(((-1.0, 0, found.moment_a), (1.0, -1, found.moment_b))):
         name = design.layout.ends[i].name or ("first", "last")[i]
         along = basis.vectors[:2, leg] / basis.lengths[leg]
-        total = np.zeros((len(names), design.rows or 1))
         for d in (0, 1):
             thermal = np.repeat(sign * found.force[d] * share, 2, axis=0)
             push = np.sign(thermal[0::2] * along[d]) * along[d] * rub[i]
@@ -130,20 +141,11 @@ def _loads(design: Design, basis: Basis, found: mechanics.ElasticCentre) -> tupl
                      negative=direction_words(design, d, back=True), kind="force", states=names, thermal=thermal,
                      friction=friction, weight=np.zeros_like(thermal))
             )  # fmt: skip
-            total = total + (thermal + friction) * along[d]
+            forces[i][:, d] = thermal + friction
         turning = np.repeat(moment * share, 2, axis=0)
         loads.append(
             Load(point=f"anchor {name}", name="moment", positive="anticlockwise seen from above",
                  negative="clockwise seen from above", kind="moment", states=names, thermal=turning,
                  friction=np.zeros_like(turning), weight=np.zeros_like(turning))
         )  # fmt: skip
-        place = np.abs(total).argmax(axis=0)
-        checks.append(
-            Check(
-                key=f"anchor {i + 1}", title=f"Anchor {name}, along its leg", concern=Concern.REACTION, kind="force",
-                demand=np.take_along_axis(np.abs(total), place[None], axis=0)[0],
-                limit=np.broadcast_to(design.layout.ends[i].anchor_limit, (design.rows or 1,)), places=names,
-                place=place, note="thermal and friction together",
-            )
-        )  # fmt: skip
-    return tuple(loads), tuple(checks)
+    return tuple(loads), tuple(anchor_checks(design, names, (forces[0], forces[1])))

@@ -14,12 +14,14 @@ from pipeflex.mechanics import cantilever, expansion, support
 from pipeflex.methods.basis import Basis, remark
 from pipeflex.methods.common import (
     Outside,
+    anchor_checks,
     direction_words,
     friction_reach,
     guide_check,
     held_rigidly,
     leg_names,
     room_check,
+    shoe_alarm,
     shoe_check,
     unseen,
 )
@@ -88,13 +90,13 @@ def limits(design: Design, basis: Basis) -> Outside:
     for corner in layout.corners:
         outside.note(f"The rule does not see the stress intensification of corners ({corner.kind}).",
                      corner.kind not in ("bend", "square"))  # fmt: skip
-    if layout.shape in ("L", "Z"):
+    if not layout.shape.endswith("U"):
         _near_guide(design, basis, outside)
     return outside
 
 
 def _near_guide(design: Design, basis: Basis, outside: Outside) -> None:
-    """An L or Z whose first guide stands too near is outside: the stub between corner and guide is never seen."""
+    """Any run but a loop whose first guide stands too near is outside: the stub between corner and guide is unseen."""
     layout = design.layout
     lengths = basis.lengths
     ends = {1: 0, layout.leg_count: layout.leg_count - 1}
@@ -103,8 +105,9 @@ def _near_guide(design: Design, basis: Basis, outside: Outside) -> None:
         needed = cantilever.guide_distance_needed(basis.E_a, basis.D_o, basis.e, square, basis.S_A)
         near = [lengths[i] - s.distance if leg == 1 else np.asarray(s.distance)
                 for s in layout.supports if s.kind == "guide" and s.leg == leg]  # fmt: skip
-        if layout.first_guide is not None:
-            near.append(np.asarray(layout.first_guide))
+        first = layout.first_guide if layout.first_guide is not None else layout.guide_spacing
+        if first is not None:
+            near.append(np.asarray(first))
         for distance in near:
             outside.add(
                 f"The first guide on leg {leg} stands {{g}} from its corner, nearer than {{need}}",
@@ -124,7 +127,7 @@ def run(design: Design, basis: Basis, calc: Calc) -> Outcome:
         delta=np.take_along_axis(delta, worst[None], axis=0)[0], S_A=basis.S_A,
     )  # fmt: skip
     loads, anchors = _anchors(design, basis, legs, calc)
-    room = room_check(design, basis, calc)
+    room, shoe = room_check(design, basis, calc), shoe_check(design, basis)
     checks = (
         Check(
             key="range", title="Range, bending stress S of the rule", concern=Concern.STRESS, kind="stress",
@@ -132,14 +135,15 @@ def run(design: Design, basis: Basis, calc: Calc) -> Outcome:
             states=f"{State.COLDEST} to {State.HOTTEST}",
         ),
         room,
-        shoe_check(design, basis),
+        shoe,
         *anchors,
         guide_check(design),
     )  # fmt: skip
     results = {name: basis.pool[name] for name in ("w", "e", "E_a", "S_A", "f", "I", "Z")}
-    results |= {"l_req": l_req, "S": stress} | held_rigidly(design, basis, calc)
+    governing = np.take_along_axis(legs.lengths[legs.leg], worst[None], axis=0)[0]
+    results |= {"l_req": l_req, "l": governing, "S": stress} | held_rigidly(design, basis, calc)
     severe = design.code.severe_cyclic
-    remarks = [*basis.remarks, *outside.notes]
+    remarks = [*basis.remarks, *outside.notes, shoe_alarm(design, shoe)]
     if severe is not None:
         remarks.append(
             remark("Cyclic conditions may be severe (the range above 0.8 S_A and more than 7000 cycles): "
@@ -195,7 +199,7 @@ def _anchors(design: Design, basis: Basis, legs: Legs, calc: Calc) -> tuple[tupl
         thrust[d] = R_E * 12 * basis.E_a * basis.I * total / legs.cubes[d]
     friction = _friction(design, basis, calc)
     states = tuple(f"{c.name}, {way}" for c in cases for way in (State.HEATING, State.COOLING))
-    checks = []
+    forces = tuple(np.zeros((len(states), 3, design.rows or 1)) for _ in range(2))
     for end, (own_leg, sign) in enumerate(((0, -1.0), (layout.leg_count - 1, 1.0))):
         own = int(legs.axis[own_leg])
         for d in ways.tolist():
@@ -205,11 +209,10 @@ def _anchors(design: Design, basis: Basis, legs: Legs, calc: Calc) -> tuple[tupl
             if d == own:
                 rub[0::2], rub[1::2] = outward * friction[end], -outward * friction[end]
             loads.append(_load(design, end, d, states, thermal, rub))
-            if d == own:
-                checks.append(_anchor_check(design, end, loads[-1]))
+            forces[end][:, d] = loads[-1].total
     _trace_anchor(design, basis, legs, growth, R_E, friction, calc)
     loads += _moments(design, legs, thrust, states)
-    return tuple(loads), tuple(checks)
+    return tuple(loads), tuple(anchor_checks(design, states, (forces[0], forces[1])))
 
 
 def _load(design: Design, end: int, d: int, states: tuple[str, ...], thermal: Any, friction: Any) -> Load:
@@ -221,22 +224,13 @@ def _load(design: Design, end: int, d: int, states: tuple[str, ...], thermal: An
     )  # fmt: skip
 
 
-def _anchor_check(design: Design, end: int, load: Load) -> Check:
-    rows = design.rows or 1
-    return Check(
-        key=f"anchor {end + 1}", title=f"{load.point[0].upper()}{load.point[1:]}, along its leg",
-        concern=Concern.REACTION, kind="force", demand=np.abs(load.greatest()),
-        limit=np.broadcast_to(design.layout.ends[end].anchor_limit, (rows,)),
-        places=load.states, place=load.worst, note="thermal and friction together",
-    )  # fmt: skip
-
-
 def _friction(design: Design, basis: Basis, calc: Calc) -> np.ndarray:
     """Friction that reaches each end: of its own side only, to the middle of what bends, (2, rows) [N]."""
-    reach = friction_reach(basis)
+    reach, beside = friction_reach(design, basis)
     named = [end.name or f"end {i + 1}" for i, end in enumerate(design.layout.ends)]
     friction: np.ndarray = calc.each(
-        support.friction_force, over="anchor", names=named, mu=design.layout.friction, w=basis.w, L_mu=reach,
+        support.friction_force, over="anchor", names=named, mu=design.layout.friction, w=basis.w,
+        L_mu=reach, W_c=beside,
         words="friction of the supports on the anchor's own side, to the middle of the part that bends",
     )  # fmt: skip
     return friction

@@ -7,7 +7,7 @@ import numpy as np
 from pipeflex.errors import Fault, ScopeError
 from pipeflex.mechanics import expansion
 from pipeflex.methods.basis import Basis, remark
-from pipeflex.methods.common import Outside, unseen
+from pipeflex.methods.common import Outside, anchor_checks, room_check, shoe_check, unseen
 from pipeflex.model.design import Design
 from pipeflex.model.outcome import Check, Outcome
 from pipeflex.model.words import Concern, State
@@ -64,6 +64,8 @@ def run(design: Design, basis: Basis, calc: Calc) -> Outcome:
         key="screening", title="Screening value", concern=Concern.STRESS, kind="screening value", demand=q,
         limit=K_1, states=f"{State.COLDEST} to {State.HOTTEST}", note="says nothing of reactions",
     )  # fmt: skip
+    nothing = np.zeros((1, 3, design.rows or 1))
+    anchors = anchor_checks(design, ("",), (nothing, nothing), unjudged="the rule says nothing of reactions")
     results = {name: basis.pool[name] for name in ("w", "e", "E_a", "S_A", "f", "I", "Z")}
     notes = [*basis.remarks, *outside.notes]
     notes.append(remark("The rule is for lines that are not under severe cyclic conditions, of one size, between "
@@ -71,8 +73,9 @@ def run(design: Design, basis: Basis, calc: Calc) -> Outcome:
     shaped = [
         r if np.shape(r.rows) == outside.mask.shape else remark(r.text, np.ones_like(outside.mask)) for r in notes
     ]
+    checks = (check, room_check(design, basis, calc), shoe_check(design, basis), *anchors)
     return Outcome(
-        design=design, method=KEY, method_title=TITLE, checks=(check,), loads=(), movements=(),
+        design=design, method=KEY, method_title=TITLE, checks=checks, loads=(), movements=(),
         results={**results, "q": q, "K_1": K_1}, remarks=tuple(shaped), outside=outside.mask,
         outside_reasons=tuple(outside.reasons),
     )  # fmt: skip

@@ -22,6 +22,8 @@ LEG_STEP: Final = 0.05
 """Step to which a fitted length is rounded up [m]; 2 in for U.S. display."""
 _FARTHEST: Final = 3 * LONGEST
 _GUIDES, _LENGTHS = 40, 60
+_VERIFIED: Final = 40
+"""How many values that hold in a column are tried as single designs."""
 _GRID: Final = 65
 _ROUNDS: Final = 4
 
@@ -127,14 +129,16 @@ def fit(
         (not (math.isfinite(step) and 0 < step <= LONGEST), Fault("step", step, "above zero", "length", high=LONGEST)),
         (not 0 < target <= 1, Fault("target", target, "above zero", "ratio", high=1.0)),
     )
-    end = min(float(design.limits.room), LONGEST) if longest is None else longest
+    end = _end(design, path) if longest is None else longest
     asked = _Asked(design, path, target, step, key, units)
     values, outcome = tried(design, path, _steps(step, end), key)
-    found = None if outcome is None else _first_adequate(outcome, target)
-    if found is not None:
-        value = round(float(values[found]), 9)
+    for i in [] if outcome is None else _adequate(outcome, target)[:_VERIFIED].tolist():
+        value = round(float(values[i]), 9)
         chosen = put(design, path, value)
-        return Fit(path=path, value=value, outcome=solve(chosen, key), design=chosen)
+        # rests, their friction and the sustained stress are known to a single design only
+        single = solve(chosen, key)
+        if single.adequate() and single.leading.ratio <= target:
+            return Fit(path=path, value=value, outcome=single, design=chosen)
     within = "within the room of" if longest is None and end == design.limits.room else "up to"
     reason = f"No {_label(path).lower()} {within} {asked.length(end)} holds at the target of {percent(target)}."
     return Fit(path=path, value=None, outcome=None, design=None, reason=reason, help=_help(asked, outcome))
@@ -160,16 +164,19 @@ def _steps(step: float, end: float) -> np.ndarray:
     return step * np.arange(1, int(end / step + 1e-9) + 1)
 
 
-def _first_adequate(outcome: Outcome, target: float) -> int | None:
-    """Index of the first value past the peak of the leading ratio that meets the target and all other checks."""
+def _end(design: Design, path: str) -> float:
+    """How far a fit searches: to the room for a size of a loop, to the anchor for a guide, 12 m at most [m]."""
+    if path == "layout.first_guide":
+        return min(LONGEST, float(design.layout.leg_lengths()[[0, -1]].min()))
+    return min(float(design.limits.room), LONGEST)
+
+
+def _adequate(outcome: Outcome, target: float) -> np.ndarray:
+    """Indices of the values past the peak of the leading ratio that meet the target and all other checks."""
     leading = np.asarray(outcome.leading.ratio)
-    others = [np.where(c.judged, c.ratio, 0.0) for c in outcome.checks[1:]]
-    rest = np.max(others, axis=0) if others else np.zeros_like(leading)
-    good = (leading <= target) & (rest <= 1.0) & ~np.asarray(outcome.outside) & outcome.leading.judged
-    inside = ~np.asarray(outcome.outside)
-    peak = int(np.where(inside, leading, -1.0).argmax())
-    after = np.flatnonzero(good & (np.arange(len(good)) >= peak))
-    return int(after[0]) if len(after) else None
+    good = np.asarray(outcome.adequate()) & (leading <= target)
+    peak = int(np.where(np.asarray(outcome.outside), -1.0, leading).argmax())
+    return np.flatnonzero(good & (np.arange(len(good)) >= peak))
 
 
 def _help(asked: _Asked, outcome: Outcome | None) -> str:
@@ -177,8 +184,9 @@ def _help(asked: _Asked, outcome: Outcome | None) -> str:
     words, design = _label(asked.path).lower(), asked.design
     free = replace_limits(design, room=math.inf)
     values, wide = tried(free, asked.path, _steps(asked.step, _FARTHEST), asked.key)
-    found = None if wide is None else _first_adequate(wide, asked.target)
-    if wide is not None and found is not None:
+    hits = np.zeros(0, int) if wide is None else _adequate(wide, asked.target)
+    if wide is not None and len(hits):
+        found = int(hits[0])
         taken = float(np.asarray(wide.check("room").demand)[found]) if len(wide.checks) > 1 else 0.0
         room = f"; it takes a room of {asked.length(taken)}" if taken > design.limits.room else ""
         return f"A {words} of {asked.length(float(values[found]))} would{room}."
@@ -275,6 +283,8 @@ def reserve(design: Design, paths: Sequence[str] | None = None, key: str | None 
     outcome = solve(design, key)
     used = method(outcome.method).key if key is None else key
     state = bool(outcome.adequate())
+    # columns know neither rests nor their friction: where they disagree today no turning value is told
+    agrees = bool(np.all(solve(design.column(), used).adequate() == state))
     turns = []
     for path in paths if paths is not None else _usual(design):
         present = at(design, path)
@@ -282,7 +292,7 @@ def reserve(design: Design, paths: Sequence[str] | None = None, key: str | None 
             raise MissingInput(Fault(path, None, allowed="a value to start from"))
         kind = _kind(design, path)
         low, high = _range(design, path, float(present), kind)
-        found = _turn(design, path, float(present), low, high, state, used)
+        found = _turn(design, path, float(present), low, high, state, used) if agrees else math.nan
         turns.append(Turn(path=path, label=_turn_label(path), kind=kind, present=float(present), turns=found))
     return tuple(turns)
 

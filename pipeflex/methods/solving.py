@@ -11,6 +11,7 @@ from pipeflex.mechanics import cantilever, expansion
 from pipeflex.methods import beam_flexibility, elastic_centre, guided_cantilever, screening
 from pipeflex.methods.basis import Basis, basis
 from pipeflex.model.design import Design
+from pipeflex.model.fields import FrozenMap
 from pipeflex.model.outcome import Ladder, Outcome, Rung
 from pipeflex.model.record import put
 from pipeflex.model.words import Standing
@@ -142,9 +143,16 @@ def _rung(one: Method, outcome: Outcome) -> Rung:
     anchors = [float(c.demand) for c in outcome.checks if c.key.startswith("anchor")]
     return Rung(
         key=one.key, title=one.title, standing=outcome.standing, reason=reasons,
-        ratio=float(outcome.leading.ratio), leg=float(outcome.results.get("l_req", np.nan)),
+        ratio=float(outcome.leading.ratio), leg=_leg_asked(outcome),
         anchor=max(anchors, default=float("nan")),
     )  # fmt: skip
+
+
+def _leg_asked(outcome: Outcome) -> float:
+    """The leg that a rule asks, where it is the leg that governs; not a number otherwise."""
+    leg = outcome.design.layout.sizes.get("leg", np.nan)
+    governs = np.isclose(outcome.results.get("l", np.nan), float(leg), rtol=1e-9)
+    return float(outcome.results["l_req"]) if governs else float("nan")
 
 
 def _compared(design: Design, rung: Rung, reference: Outcome) -> Rung:
@@ -158,7 +166,8 @@ def _compared(design: Design, rung: Rung, reference: Outcome) -> Rung:
     at_leg = _at_leg(design, rung.leg, reference.method)
     if at_leg > 1:
         unsafe = f"Unsafe here: at the leg that it asks, {reference.method_title} has {percent(at_leg)}."
-    return replace(rung, to_best=rung.ratio / exact, at_leg=at_leg, unsafe=unsafe)
+    alike = float("nan") if rung.key == screening.KEY else rung.ratio / exact
+    return replace(rung, to_best=alike, at_leg=at_leg, unsafe=unsafe)
 
 
 def _at_leg(design: Design, leg: float, key: str) -> float:
@@ -166,7 +175,10 @@ def _at_leg(design: Design, leg: float, key: str) -> float:
     if "leg" not in design.layout.sizes or not np.isfinite(leg) or leg <= 0:
         return float("nan")
     try:
-        trial = put(design, "layout.sizes.leg", np.array([leg]))
+        sizes = {**design.layout.sizes, "leg": np.array([leg])}
+        if "width" in (full := design.layout.full_sizes()):
+            sizes["width"] = full["width"]
+        trial = put(design, "layout.sizes", FrozenMap(sizes))
         return float(_column(trial, method(key)).leading.ratio[0])
     except PipeflexError:
         return float("nan")

@@ -10,7 +10,7 @@ from typing import Any, Final
 
 import numpy as np
 
-from pipeflex.errors import Fault, InputError, MissingInput, refuse
+from pipeflex.errors import Bad, Fault, InputError, MissingInput, refuse
 from pipeflex.model.fields import FrozenMap, many, number, numbers, pick_of, sub, text, vector, whole
 from pipeflex.model.pipe import Pipe
 from pipeflex.model.record import Record, record
@@ -43,6 +43,15 @@ class Corner(Record):
                 (self.kind == "bend") & (np.asarray(self.radius) <= 0),
                 Fault("radius", self.radius, "above zero for a bend", "pipe dimension"),
             ),
+            (
+                ("mitre" in self.kind)
+                & ((np.asarray(self.half_angle) <= 0) | (np.asarray(self.half_angle) > MOST_MITRE)),
+                Fault("half_angle", self.half_angle, "above zero for a mitre", "angle", high=MOST_MITRE),
+            ),
+            (
+                (self.kind == "closely spaced mitre") & (np.asarray(self.spacing) <= 0),
+                Fault("spacing", self.spacing, "above zero for closely spaced mitres", "pipe dimension"),
+            ),
             (self.flanges > 2, Fault("flanges", self.flanges, allowed="0, 1 or 2 flanged ends")),
         )
 
@@ -65,6 +74,10 @@ class End(Record):
     force_limits: tuple[float, ...] = vector("force", 3, default=(np.inf,) * 3, at_least=0, unlimited=True)
     moment_limits: tuple[float, ...] = vector("moment", 3, default=(np.inf,) * 3, at_least=0, unlimited=True)
     anchor_limit: float = number("force", at_least=1, unlimited=True, label="Anchor can take", default=np.inf)
+
+    def check(self) -> None:
+        size = sum(np.asarray(v) ** 2 for v in self.axis)
+        refuse(InputError, (size < 1e-12, Fault("axis", "no direction", allowed="a vector of some length")))
 
 
 @record
@@ -189,6 +202,8 @@ SIZE_WORDS: Final = {
     "rise": "Rise",
 }
 MOST_LEGS: Final = 200
+MOST_MITRE: Final = float(np.radians(22.5)) * (1 + 1e-9)
+"""Greatest half angle of a mitre for which factors are published (ASME B31.3 Table D300) [rad]."""
 
 
 @record
@@ -293,7 +308,7 @@ class Layout(Record):
         refuse(InputError, *faults)
 
     def _check_places(self, lengths: np.ndarray) -> None:
-        faults = []
+        faults: list[Bad] = []
         placed = [(f"supports.{i}", s.leg, s.distance) for i, s in enumerate(self.supports)]
         placed += [(f"weights.{i}", s.leg, s.distance) for i, s in enumerate(self.weights)]
         placed += [(f"segments.{i}", s.leg, s.end) for i, s in enumerate(self.segments)]
@@ -305,6 +320,11 @@ class Layout(Record):
             over = np.asarray(distance) > length
             fault = Fault(f"{path}.distance", distance, f"within leg {leg}", "length", 0.0, float(length.max()))
             faults.append((over, fault))
+        for i, one in enumerate(self.segments):
+            for j, other in enumerate(self.segments[:i]):
+                meet = (np.asarray(one.start) < np.asarray(other.end)) & (np.asarray(other.start) < np.asarray(one.end))
+                fault = Fault(f"segments.{i}", f"a stretch of leg {one.leg} that meets segment {j}", "stretches apart")
+                faults.append((meet & (one.leg == other.leg), fault))
         if self.first_guide is not None and self.leg_count > 1:
             shortest = np.minimum(lengths[0], lengths[-1])
             fault = Fault(

@@ -64,7 +64,7 @@ class Check(_Row):
 
     @property
     def exceeded(self) -> Rows:
-        return self.judged & (self.ratio > 1.0)
+        return self.judged & ~(self.ratio <= 1.0)  # what is no number does not hold
 
     @property
     def judgement(self) -> Judgement:
@@ -255,7 +255,8 @@ class Outcome:
 
     def adequate(self) -> Rows:
         """Whether every judged check holds and the method is inside its limits, (rows,)."""
-        return (self.ratio() <= 1.0) & ~np.asarray(self.outside) & self.leading.judged
+        held = np.all([~np.asarray(c.exceeded) for c in self.checks], axis=0)
+        return held & ~np.asarray(self.outside) & self.leading.judged
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)

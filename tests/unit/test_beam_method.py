@@ -37,6 +37,9 @@ def test_a_row_of_a_column_is_its_single_solve(line, shape):
             design.layout, sizes={**design.layout.sizes, "leg": float(length)})), BEAM)  # fmt: skip
         row = column.row(i)
         for one, other in zip(row.checks, single.checks, strict=True):
+            if one.key == "shoe":  # a column takes the free growth of the outer legs, which the thrust shortens
+                assert 0.9 * one.demand < other.demand <= one.demand
+                continue
             assert one.demand == pytest.approx(other.demand, rel=1e-11), one.key
         assert row.leading.where == single.leading.where
 

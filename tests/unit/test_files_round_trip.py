@@ -110,7 +110,9 @@ def some_layout(rng, size, confirmed):
         if shape in ("U", "raised U") and rng.random() < 0.5:
             sizes |= {"width": 2.0, "before": 21.0}
             fixed["first_guide"] = parse("1.50 m", "length")
-    corners = [elbow(size, rng.choice(("long radius", "3D by EN 10253"))), drawn(rng, Corner, radius=0.4, flanges=2)]
+    mitre = {"half_angle": rng.uniform(0.01, 0.39), "spacing": 0.2}
+    by_table = elbow(size, rng.choice(("long radius", "3D by EN 10253")))
+    corners = [by_table, drawn(rng, Corner, radius=0.4, flanges=2, **mitre)]
     corners = corners * legs
     count = rng.choice((1, legs - 1))
     leg = rng.randint(1, legs)
@@ -125,7 +127,7 @@ def some_layout(rng, size, confirmed):
         weights=(drawn(rng, Weight, leg=leg, distance=0.2),),
         segments=(
             drawn(rng, Segment, leg=leg, start=0.1, end=0.4, pipe=some_pipe(rng, confirmed)),
-            drawn(rng, Segment, leg=leg, start=parse("1 in", "length"), end=0.4, pipe=None),
+            drawn(rng, Segment, leg=leg, start=0.5, end=parse("2 ft", "length"), pipe=None),
         ),
         **fixed,
     )

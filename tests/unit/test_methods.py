@@ -158,7 +158,7 @@ def test_room_and_shoes_by_hand(plain):
     assert room.judgement == Judgement.EXCEEDED
     shoe = outcome.check("shoe")
     assert shoe.demand == pytest.approx(STRAIN * 25.0, rel=1e-9)
-    assert shoe.where == "corner D"
+    assert shoe.where == "leg 5, D to east"
 
 
 def test_verdicts(plain):
