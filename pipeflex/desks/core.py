@@ -9,6 +9,7 @@ the last good entry, and no sheet is written meanwhile. A kind of desk says whic
 from __future__ import annotations
 
 import functools
+import logging
 import os
 import threading
 import time
@@ -23,9 +24,8 @@ from pipeflex.desks.bound import Bound, Look, home_of
 from pipeflex.desks.documents import Document
 from pipeflex.desks.entries import Entries
 from pipeflex.desks.entry import Button, ChoiceField, EntryField, Headline, Panel
-from pipeflex.desks.following import Following
+from pipeflex.desks.following import Following, Step
 from pipeflex.desks.keys import DeskBox, close_tree
-from pipeflex.desks.shield import shielded
 from pipeflex.errors import Fault, InputError, PipeflexError
 from pipeflex.methods import ladder, reserve
 from pipeflex.model.design import Design
@@ -35,6 +35,8 @@ from pipeflex.present import UNIT_SYSTEMS, UnitSystem
 IDLE: float = 0.25
 """How long the user must have been idle before the whole answer is worked out, and each step after it [s]."""
 
+_GLANCE: float = 0.03
+"""How long a field must have had the keyboard before its dimension is lit [s]."""
 _LATE: float = 2.0
 """How long the widgets of a desk stay once another has taken over: what was typed last may still be on its way [s]."""
 
@@ -43,6 +45,8 @@ _OPEN: dict[str, Desk] = {}
 
 _TURN = threading.RLock()
 """JupyterLab may run cells and the callbacks of widgets in two threads: desks do one thing at a time."""
+
+logger = logging.getLogger(__name__)
 
 P = ParamSpec("P")
 R = TypeVar("R")
@@ -111,6 +115,11 @@ class Desk:
         """Bring all but fields and picture up to date."""
         raise NotImplementedError
 
+    def fault(self, error: Exception) -> None:
+        """Log and show an error of what was done beside the user's events."""
+        logger.error("%s failed", self.title, exc_info=error)
+        self.tell(error)
+
     def say(self) -> None:
         """Show the problem, or that there is none."""
         raise NotImplementedError
@@ -154,7 +163,7 @@ class Desk:
     def _point(self, path: str) -> None:
         """Light the dimension of the field that has the keyboard."""
         self.focus = path
-        self._lights.start([(0.03, shielded(self.light, self.tell))])
+        self._lights.start([Step(_GLANCE, lambda: None, lambda _: self.light(), self.fault)])
 
     def light(self) -> None:
         """Draw again where the focus makes a difference to the picture."""
@@ -179,7 +188,7 @@ class Desk:
         """
         self.check(design, self.design)
         old = self.design
-        same = old is not None and design.with_raw(demo=()) == old.with_raw(demo=())
+        same = old is not None and _alike(design, old)
         if same and self.answer is not None and old is not None and design.demo == old.demo:
             return
         answer = self.answer if same and self.answer is not None else first_answer(design)
@@ -231,40 +240,27 @@ class Desk:
     # --- the answer that follows ----------------------------------------------------------------------
 
     def _follow(self) -> None:
-        steps = (self._complete, self._climb, self._turn)
-        self._following.start([(IDLE, shielded(step, self.tell)) for step in steps])
+        design = self.held
+        works: tuple[tuple[Callable[[], Any], Callable[[Answer, Any], Answer]], ...] = (
+            (lambda: whole_answer(design), lambda _, whole: whole),
+            (lambda: ladder(design), lambda answer, rungs: replace(answer, ladder=rungs)),
+            (lambda: reserve(design), lambda answer, turns: replace(answer, turns=turns, complete=True)),
+        )
+        steps = [Step(IDLE, work, functools.partial(self._add, design, join), self.fault) for work, join in works]
+        self._following.start(steps)
 
     @in_turn
-    def _complete(self) -> None:
-        """The whole answer in place of the first."""
-        try:
-            self.answer = whole_answer(self.held)
-        except PipeflexError:
-            self._following.stop()
-            raise
-        self.show()
-
-    @in_turn
-    def _climb(self) -> None:
-        if self.answer is not None and self.answer.whole:
-            self.answer = replace(self.answer, ladder=ladder(self.held))
+    def _add(self, design: Design, join: Callable[[Answer, Any], Answer], found: Any) -> None:
+        """Add to the answer what was found for a design, if that is still the one that is shown."""
+        if self.design is design and self.answer is not None:
+            self.answer = join(self.answer, found)
             self.show()
 
     @in_turn
-    def _turn(self) -> None:
-        if self.answer is not None and self.answer.whole:
-            turns = reserve(self.held, key=self.answer.outcome.method)
-            self.answer = replace(self.answer, turns=turns, complete=True)
-            self.show()
-
-    @in_turn
-    def finish(self) -> Answer | None:
-        """Work out now what would follow."""
-        self._following.stop()
-        if self.answer is not None and not self.answer.complete:
-            for step in (self._complete, self._climb, self._turn):
-                step()
-        return self.answer
+    def complete(self) -> None:
+        """Work out now what a first answer leaves to follow."""
+        if self.answer is not None and not self.answer.whole:
+            self._add(self.held, lambda _, whole: whole, whole_answer(self.held))
 
     @property
     def sure(self) -> bool:
@@ -347,7 +343,7 @@ class Desk:
             self.show()
         if before.fields.keys() == self.fields.keys():
             before._successor = self
-            before._following.start([(_LATE, before.close)])
+            before._following.start([Step(_LATE, lambda: None, lambda _: before.close(), self.fault)])
         else:
             before.close()
 
@@ -382,3 +378,9 @@ class Desk:
         if _OPEN.get(self.file.key) is self:
             del _OPEN[self.file.key]
         self.box.close_all()
+
+
+def _alike(one: Design, other: Design) -> bool:
+    """Whether two designs have the same answer; what they share is not looked at twice."""
+    pairs = [(getattr(one, name), getattr(other, name)) for name, _ in one.specs() if name != "demo"]
+    return all(a is b or a == b for a, b in pairs)

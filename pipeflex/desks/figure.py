@@ -1,42 +1,51 @@
-"""A drawing as a plain plotly figure: one trace for each look, labels as text, colours by their roles.
+"""A drawing as a plain plotly figure: one path for each look, labels as text, colours by their roles.
 
 The page finds the colour of a role for its theme: the view must have the palette of `pipeflex.sheet.svg`.
 """
 
+from collections.abc import Iterator, Sequence
 from itertools import groupby
 from typing import Any, Final
 
-from pipeflex.sheet.drawing.parts import XY, Area, Label, Scene, Stroke
+from pipeflex.sheet.drawing.parts import Area, Label, Scene, Stroke
 
 _PLACE: Final = {"start": "middle right", "middle": "middle center", "end": "middle left"}
+_THINNEST: Final = 0.8
+"""Least weight of a line on the screen [px]."""
 _ALIGN: Final = {"start": "left", "middle": "center", "end": "right"}
 
 
 def figure(scene: Scene, scale: float) -> dict[str, Any]:
-    """Data and layout of a scene.
+    """Data and layout of a scene: lines and areas as paths below, letters and places as marks above.
 
     Parameters
     ----------
     scale : pixels a millimetre of paper, for letters and line weights.
     """
-    data = [_trace(list(alike), scale) for _, alike in groupby(scene.shapes, key=_look)]
-    level = [label for label in scene.labels if not label.turn]
-    data += [_letters(list(alike), scale) for _, alike in groupby(sorted(level, key=_style), key=_style)]
-    if scene.spots:
-        data.append(_spots(scene))
-    hidden = {"visible": False, "fixedrange": False}
+    hidden = {"visible": False, "fixedrange": False, "constrain": "domain"}
     return {
-        "data": data,
+        "data": [_letters([label for label in scene.labels if not label.turn], scale), _spots(scene)],
         "layout": {
             "margin": {"l": 0, "r": 0, "t": 0, "b": 0},
             "dragmode": "zoom",
-            "xaxis": {**hidden, "range": [0, scene.width], "constrain": "domain"},
-            "yaxis": {
-                **hidden, "range": [scene.height, 0], "scaleanchor": "x", "constrain": "domain",
-            },
+            "xaxis": {**hidden, "range": [0, scene.width]},
+            "yaxis": {**hidden, "range": [scene.height, 0], "scaleanchor": "x"},
+            "shapes": [_shape(alike, scale) for alike in _alike(scene.shapes)],
             "annotations": [_turned(label, scale) for label in scene.labels if label.turn],
         },
-    }  # fmt: skip
+    }
+
+
+def _alike(shapes: Sequence[Area | Stroke]) -> Iterator[list[Area | Stroke]]:
+    """Shapes of one look together, each at the place of the first; what is painted over stays below.
+
+    A page takes its time a path, whatever is in it; a trace instead of a path takes it three times.
+    """
+    for covers, section in groupby(shapes, key=lambda shape: shape.role == "paper"):
+        looks: dict[Any, list[Area | Stroke]] = {}
+        for shape in section:
+            looks.setdefault((covers, *_look(shape)), []).append(shape)
+        yield from looks.values()
 
 
 def _look(shape: Area | Stroke) -> tuple[object, ...]:
@@ -49,47 +58,32 @@ def _colour(role: str, opacity: float = 1.0) -> str:
     return role + (f"/{opacity:g}" if opacity < 1 else "")
 
 
-def _run(outlines: list[tuple[XY, ...]], closed: bool) -> tuple[list[float | None], list[float | None]]:
-    """Points of several lines, with a gap after each."""
-    x: list[float | None] = []
-    y: list[float | None] = []
-    for points in outlines:
-        whole = (*points, points[0]) if closed else points
-        x += [round(p[0], 2) for p in whole] + [None]
-        y += [round(p[1], 2) for p in whole] + [None]
-    return x[:-1], y[:-1]
-
-
-def _trace(alike: list[Area | Stroke], scale: float) -> dict[str, Any]:
+def _shape(alike: list[Area | Stroke], scale: float) -> dict[str, Any]:
     first = alike[0]
-    area = isinstance(first, Area)
-    x, y = _run([shape.points for shape in alike], area)
-    trace = {"type": "scatter", "x": x, "y": y, "mode": "lines", "hoverinfo": "skip"}
+    closed = "Z" if isinstance(first, Area) else ""
+    lines = ("L".join(f"{x:.2f},{y:.2f}" for x, y in shape.points) for shape in alike)
+    path = {"type": "path", "layer": "below", "path": "".join(f"M{line}{closed}" for line in lines)}
     if isinstance(first, Area):
-        return {**trace, "fill": "toself", "fillcolor": _colour(first.role, first.opacity), "line": {"width": 0}}
+        return {**path, "fillcolor": _colour(first.role, first.opacity), "line": {"width": 0}}
     dash = ",".join(f"{d * scale:.1f}px" for d in first.dash) or "solid"
-    line = {"color": _colour(first.role), "width": round(max(0.8, first.weight * scale), 2), "dash": dash}
-    return {**trace, "line": {**line, "simplify": False}}
-
-
-def _style(label: Label) -> tuple[Any, ...]:
-    return label.role, label.size, label.anchor, label.bold
+    weight = round(max(_THINNEST, first.weight * scale), 2)
+    return {**path, "line": {"color": _colour(first.role), "width": weight, "dash": dash}}
 
 
 def _font(label: Label, scale: float) -> dict[str, Any]:
-    weight = {"weight": "bold"} if label.bold else {}
-    return {"size": round(label.size * scale, 1), "color": _colour(label.role), **weight}
+    weight = "bold" if label.bold else "normal"
+    return {"size": round(label.size * scale, 1), "color": _colour(label.role), "weight": weight}
 
 
-def _letters(alike: list[Label], scale: float) -> dict[str, Any]:
-    first = alike[0]
+def _letters(labels: list[Label], scale: float) -> dict[str, Any]:
+    fonts = [_font(label, scale) for label in labels]
     return {
         "type": "scatter", "mode": "text", "hoverinfo": "skip", "cliponaxis": False,
-        "x": [round(label.at[0], 2) for label in alike],
-        "y": [round(label.at[1], 2) for label in alike],
-        "text": [_plain(label.text) for label in alike],
-        "textposition": _PLACE[first.anchor],
-        "textfont": _font(first, scale),
+        "x": [round(label.at[0], 2) for label in labels],
+        "y": [round(label.at[1], 2) for label in labels],
+        "text": [_plain(label.text) for label in labels],
+        "textposition": [_PLACE[label.anchor] for label in labels],
+        "textfont": {name: [font[name] for font in fonts] for name in ("size", "color", "weight")},
     }  # fmt: skip
 
 

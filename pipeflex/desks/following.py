@@ -1,47 +1,70 @@
-"""What may follow the first answer: steps that run between the user's events, and give way to the next one."""
+"""What may follow the first answer: worked out beside the user's events, and dropped at the next one."""
 
 import asyncio
 from collections.abc import Callable, Sequence
-from typing import Any
+from concurrent.futures import Executor, ThreadPoolExecutor
+from contextlib import suppress
+from functools import cache
+from typing import Any, NamedTuple
 
-Step = tuple[float, Callable[[], Any]]
-"""How long nothing else must have happened [s], and what is then done."""
+
+class Step(NamedTuple):
+    """After an idle time [s], `work` is done in a thread of its own; `then` takes what it returns, `fault` an error."""
+
+    idle: float
+    work: Callable[[], Any]
+    then: Callable[[Any], None]
+    fault: Callable[[Exception], None]
+
+
+@cache
+def _worker() -> Executor:
+    return ThreadPoolExecutor(1, "pipeflex")
 
 
 class Following:
-    """Runs steps one after another, each once the kernel has been idle; a new start forgets those not yet run.
+    """Runs steps one after another; a new start, or a stop, forgets those that are not done.
 
-    Where no event loop runs (a script, a test) `start` runs all of them at once.
+    Results are taken in the thread that called `start`. Where no event loop runs there (a script, a test), `start`
+    does all steps at once.
     """
 
     def __init__(self) -> None:
-        self._waiting: asyncio.TimerHandle | None = None
+        self._under_way: tuple[asyncio.AbstractEventLoop, asyncio.Task[None]] | None = None
 
     def start(self, steps: Sequence[Step]) -> None:
         self.stop()
         try:
             loop = asyncio.get_running_loop()
         except RuntimeError:
-            for _, act in steps:
-                act()
+            for step in steps:
+                if not _taken(step):
+                    return
             return
-        self._next(loop, list(steps))
+        self._under_way = loop, loop.create_task(_run(loop, steps))
 
     def stop(self) -> None:
-        if self._waiting is not None:
-            self._waiting.cancel()
-            self._waiting = None
+        if self._under_way is not None:
+            loop, task = self._under_way
+            self._under_way = None
+            with suppress(RuntimeError):  # the loop is closed: nothing runs any more
+                loop.call_soon_threadsafe(task.cancel)
 
-    def _next(self, loop: asyncio.AbstractEventLoop, steps: list[Step]) -> None:
-        if not steps:
-            self._waiting = None
+
+def _taken(step: Step) -> bool:
+    try:
+        step.then(step.work())
+    except Exception as error:
+        step.fault(error)
+        return False
+    return True
+
+
+async def _run(loop: asyncio.AbstractEventLoop, steps: Sequence[Step]) -> None:
+    for step in steps:
+        await asyncio.sleep(step.idle)
+        try:
+            step.then(await loop.run_in_executor(_worker(), step.work))
+        except Exception as error:
+            step.fault(error)
             return
-        (delay, act), *rest = steps
-
-        def run() -> None:
-            self._waiting = None
-            act()
-            if self._waiting is None:
-                self._next(loop, rest)
-
-        self._waiting = loop.call_later(delay, run)

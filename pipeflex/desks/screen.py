@@ -217,8 +217,7 @@ class Screen(Desk):
 
     def _ipython_display_(self) -> None:
         display(self.box)  # type: ignore[no-untyped-call]
-        if self.answer is not None and not self.answer.whole:
-            self._complete()
+        self.complete()
         self.copy = StaticCopy("Static copy of the picture, for readers without a kernel")
         self._show_copy()
 

@@ -1,6 +1,8 @@
 """Fields that the trade writes in its own way: size and wall, material, elbows, tie-in days, states, code."""
 
+from contextlib import suppress
 from dataclasses import replace
+from functools import lru_cache
 from typing import Any, Final
 
 from pipeflex import present
@@ -43,30 +45,32 @@ def _resized(corner: Corner, old: str, new: str) -> Corner:
 
 def elbow_kind(corner: Corner, size: str) -> str | None:
     """The kind of elbow that a corner is, for pipe of a size."""
+    return next((kind for kind, found in _elbows(size).items() if found == corner), None)
+
+
+@lru_cache(maxsize=64)
+def _elbows(size: str) -> dict[str, Corner]:
+    """The elbows that are made in a size, by kind."""
+    found = {}
     for kind in ELBOWS:
-        try:
-            found = elbow(size, kind)
-        except TableError:
-            continue
-        if (found.radius, found.radius_from) == (corner.radius, corner.radius_from):
-            return kind
-    return None
+        with suppress(TableError):
+            found[kind] = elbow(size, kind)
+    return found
 
 
-def _schedules(size: str) -> tuple[str, ...]:
-    """Walls of a size by their names, each wall once, the thinnest first."""
+@lru_cache(maxsize=64)
+def _schedules(size: str) -> dict[tuple[float, float], str]:
+    """Wall and diameter of a size -> its name in the standards, each once, the thinnest first."""
     found: dict[tuple[float, float], str] = {}
     try:
         listed = (*sorted(walls(size), key=lambda name: not name[0].isdigit()), *_TUBE)
     except PipeflexError:
         listed = _TUBE
     for name in listed:
-        try:
+        with suppress(TableError):
             one = dimensions(size, name)
-        except TableError:
-            continue
-        found.setdefault((one.wall, one.outside_diameter), name)
-    return tuple(found[key] for key in sorted(found))
+            found.setdefault((one.wall, one.outside_diameter), name)
+    return {key: found[key] for key in sorted(found)}
 
 
 def _take_size(design: Design, text: str, units: UnitSystem) -> Design:
@@ -79,8 +83,7 @@ def _take_size(design: Design, text: str, units: UnitSystem) -> Design:
         if error.faults[0].field != "pipe.schedule" or not listed:
             raise
     wall = float(design.pipe.wall)
-    near = min(listed, key=lambda name: abs(dimensions(size, name).wall - wall))
-    return _sized(design, size, near)
+    return _sized(design, size, listed[min(listed, key=lambda key: abs(key[0] - wall))])
 
 
 def _next_size(design: Design, count: int) -> str | None:
@@ -109,7 +112,7 @@ def size_field(**how: Any) -> Trade:
 
 def _offer_walls(design: Design) -> list[tuple[str, str]]:
     pipe = design.pipe
-    listed = list(_schedules(pipe.size)) if pipe.size else []
+    listed = _schedules(pipe.size).values() if pipe.size else ()
     found = [
         (name, f"Type {name}" if name in _TUBE else f"Sch {name}" if name[0].isdigit() else name) for name in listed
     ]
@@ -120,11 +123,9 @@ def _offer_walls(design: Design) -> list[tuple[str, str]]:
 
 def _show_wall(design: Design, look: Look) -> Shown:
     pipe = design.pipe
-    for name in _schedules(pipe.size) if pipe.size else ():
-        found = dimensions(pipe.size, name)
-        if (found.wall, found.outside_diameter) == (float(pipe.wall), float(pipe.outside_diameter)):
-            return Shown(name)
-    return Shown(_OWN)
+    return Shown(
+        _schedules(pipe.size).get((float(pipe.wall), float(pipe.outside_diameter)), _OWN) if pipe.size else _OWN
+    )
 
 
 def _take_schedule(design: Design, text: str, units: UnitSystem) -> Design:
@@ -193,15 +194,8 @@ def material_field(**how: Any) -> Trade:
 
 
 def _offer_elbows(design: Design) -> list[tuple[str, str]]:
-    found = []
-    for kind in ELBOWS:
-        try:
-            elbow(design.pipe.size, kind)
-        except TableError:
-            continue
-        found.append((kind, kind))
     own = _show_elbow(design, Look()).text
-    return found if any(own == key for key, _ in found) else [*found, (own, own)]
+    return [(kind, kind) for kind in {**_elbows(design.pipe.size), own: None}]
 
 
 def _show_elbow(design: Design, look: Look) -> Shown:

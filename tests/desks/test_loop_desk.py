@@ -582,4 +582,5 @@ def test_a_fault_in_what_follows_is_told(desk: LoopDesk, monkeypatch: pytest.Mon
     monkeypatch.setattr(core, "ladder", fails)
     put(desk, "Leg", "5.2")
     assert "ZeroDivisionError: by nought" in desk.problem
+    assert "ZeroDivisionError" in desk.trouble.text
     assert desk.held.layout.sizes["leg"] == 5.2
