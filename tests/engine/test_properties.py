@@ -348,6 +348,45 @@ def rack(seed: int, guided=None):
     return run, States(strain=np.array([0.0, 1.0, 0.2, 1.0])[:, None, None] * heat, weight=1.0)
 
 
+@pytest.mark.parametrize("rows", [1, 5000])
+@pytest.mark.parametrize("axes", [(0, 1), (0, 2), (1, 2), (2, 1)])
+@pytest.mark.parametrize("end", [End(), End(stiffness=(1e6, np.inf, 2e6, 0.0, 3e5, np.inf))])
+def test_a_run_in_a_plane_is_a_run_in_space(axes, end, rows):
+    """What is left out in a coordinate plane is exactly nothing: the same run with nothing left out."""
+    rng = np.random.default_rng(sum(axes))
+    legs = rng.uniform(3.0, 12.0, (5, rows))
+    corners = np.zeros((3, 6, rows))
+    for leg, (axis, sign) in enumerate(((0, 1), (1, 1), (0, 1), (1, -1), (0, 1))):
+        corners[:, leg + 1] = corners[:, leg]
+        corners[axes[axis], leg + 1] += sign * legs[leg]
+    across, along = np.eye(3)[axes[1]], np.eye(3)[axes[0]]
+    guides = [
+        Support(leg=0, distance=1.5, holds=(Hold(direction=across),)),
+        Support(
+            leg=4, distance=1.9, holds=(Hold(direction=across, stiffness=1e6), Hold(direction=along, stiffness=1e5))
+        ),
+    ]
+    made = [
+        assemble(
+            corners, Section(4e-3, 2e-5), modulus=2e11, radius=np.array([[0.3], [0.4], [0.5], [0.0]]), bend_factor=6.0,
+            supports=guides, ends=(end, end),
+        )
+        for _ in range(2)
+    ]  # fmt: skip
+    made[1].cache["live"] = (0, 1, 2)
+    states = States(strain=np.array([0.001, 0.003])[:, None, None] * rng.uniform(0.5, 1.0, (1, 5, rows)))
+    plane, space = (linear(run, states) for run in made)
+    for name in ("wrench", "hold_force", "support_force", "end_a", "end_b", "start"):
+        one, other = getattr(plane, name), getattr(space, name)
+        assert np.abs(one - other).max() <= 1e-12 * np.abs(other).max()
+    plane, space = moments(plane), moments(space)
+    greatest = np.abs(space.in_plane).max()
+    for name in ("in_plane", "out_plane", "torsion", "axial"):
+        assert np.abs(getattr(plane, name) - getattr(space, name)).max() <= 1e-12 * greatest
+    assert not plane.out_plane.any()
+    assert not plane.torsion.any()
+
+
 @pytest.mark.parametrize("seed", range(6))
 def test_friction_stays_within_mu_n_and_balances(seed):
     run, states = rack(seed)

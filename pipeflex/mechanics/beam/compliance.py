@@ -13,6 +13,7 @@ References
 S. P. Timoshenko, Strength of Materials, part I, 3rd ed. 1955 (curved bars, unit-load method).
 """
 
+from functools import cached_property
 from typing import NamedTuple
 
 import numpy as np
@@ -20,6 +21,8 @@ from numpy.typing import NDArray
 
 Array = NDArray[np.float64]
 Indices = NDArray[np.intp]
+Vector = list[Array | None]
+"""Three components, those that are exactly zero left out."""
 
 UP = 2
 """Axis that points up: weight acts along -z."""
@@ -55,40 +58,54 @@ class Shape(NamedTuple):
     angle: Array
 
 
-class Member(NamedTuple):
-    """What the sweep needs of each element.
+def vector(values: Array, live: tuple[int, ...]) -> Vector:
+    """The components of (3, ...) that are not zero all along."""
+    return [values[i] if i in live else None for i in range(3)]
 
-    An element has three directions (chord, towards the inside of the bend, normal) in which it yields without turning
-    and about which it turns.
 
-    axes : (3, direction, element, row), unit vectors; arms : the same shape, movement at O as it turns by one.
-    yields : (direction, element, row) [m/N]; turns : (direction, element, row) [rad/(N*m)].
-    chord : (3, element, row) [m].
-    bow : (6, element, row), twist per unit of curvature [m].
-    load : (6, element, row), wrench of the element's own weight about O.
-    sag : (6, element, row), twist of its far end by its own weight.
-    """
+def outer(a: Vector, b: Vector) -> Vector:
+    """Vector product; what is left out in a and b is left out of the work."""
 
-    axes: Array
-    arms: Array
-    yields: Array
-    turns: Array
-    chord: Array
-    bow: Array
-    load: Array
-    sag: Array
+    def component(i: int, j: int) -> Array | None:
+        (p, q), (r, t) = (a[i], b[j]), (a[j], b[i])
+        plus = None if p is None or q is None else p * q
+        if r is None or t is None:
+            return plus
+        return -(r * t) if plus is None else plus - r * t
+
+    return [component(1, 2), component(2, 0), component(0, 1)]
+
+
+def inner_product(a: Vector, b: Vector) -> Array | None:
+    """Scalar product; None where no component is in both."""
+    total: Array | None = None
+    for p, q in zip(a, b, strict=True):
+        if p is not None and q is not None:
+            total = p * q if total is None else total + p * q
+    return total
+
+
+def less(a: Vector, b: Vector) -> Vector:
+    """Difference of two vectors."""
+
+    def component(p: Array | None, q: Array | None) -> Array | None:
+        if q is None:
+            return p
+        return -q if p is None else p - q
+
+    return [component(p, q) for p, q in zip(a, b, strict=True)]
 
 
 def cross(a: Array, b: Array) -> Array:
     """Vector product along the first axis; the other axes broadcast."""
-    a0, a1, a2 = a
-    b0, b1, b2 = b
-    return np.array([a1 * b2 - a2 * b1, a2 * b0 - a0 * b2, a0 * b1 - a1 * b0])
+    return np.array(outer([*a], [*b]))
 
 
 def dot(a: Array, b: Array) -> Array:
     """Scalar product along the first axis."""
-    product: Array = a[0] * b[0] + a[1] * b[1] + a[2] * b[2]
+    product: Array = a[0] * b[0]
+    for p, q in zip(a[1:], b[1:], strict=True):
+        product = product + p * q
     return product
 
 
@@ -107,85 +124,142 @@ def _rotated_up(vector: Array) -> Array:
     return np.stack([-vector[1], vector[0], np.zeros_like(vector[0])])
 
 
-def members(shape: Shape, prop: Properties, bent: Indices, weighs: bool = True) -> Member:
-    """Straights and exact circular bends.
+class Member:
+    """What the sweep needs of each element: straights and exact circular bends.
+
+    An element has three directions (chord, towards the inside of the bend, normal) in which it yields without turning
+    and about which it turns.  What is not asked for is not worked out.
 
     Parameters
     ----------
     shape : centre line; angle and radius are 0 on straights.
     prop : stiffness; on bends the bending stiffness is E I / k, k acting on bending in and out of plane.
     bent : indices of the bends.
-    weighs : False leaves the terms of weight zero.
+    live : axes along which the run extends at all.
+
+    Attributes
+    ----------
+    yields : (direction, element, row) [m/N]; turns : (direction, element, row) [rad/(N*m)].
+    chord : (3, element, row) [m].
     """
-    along, length = shape.along, shape.length
-    axes = np.empty((3, 3, *length.shape))
-    axes[:, 0], axes[:, 1] = along, shape.inward
-    yields, turns = np.empty((3, *length.shape)), np.empty((3, *length.shape))
-    bending = length / prop.bending
-    yields[0], yields[1:] = length / prop.axial, length * length * bending / 12.0
-    turns[0], turns[1:] = length / prop.torsion, bending
-    middle = shape.start + 0.5 * length * along
-    other, chord, turned = middle, length * along, middle
-    shift = np.zeros_like(middle)
-    if len(bent):
-        other, chord, turned = middle.copy(), chord, middle.copy()
-        _bend(shape, prop, bent, axes, yields, turns, (middle, other, chord, turned, shift))
-    axes[:, 2] = cross(axes[:, 0], axes[:, 1])
-    arms = np.empty_like(axes)
-    arms[:, 2] = cross(middle, axes[:, 2])
-    arms[:, :2] = cross(other[:, None], axes[:, :2])
-    turn = _rotated_up(chord)
-    bow = _twist(shift, turn, turned)
-    load, sag = np.zeros_like(bow), np.zeros_like(bow)
-    if weighs:
-        down = np.zeros_like(chord)
-        down[UP] = -prop.weight
-        load = _wrench(length * down, middle)
-        sag = _straight_sag(shape, prop, down)
+
+    def __init__(self, shape: Shape, prop: Properties, bent: Indices, live: tuple[int, ...]) -> None:
+        self.shape, self.prop, self.bent, self.live = shape, prop, bent, live
+        length = shape.length
+        self.yields, self.turns = np.empty((3, *length.shape)), np.empty((3, *length.shape))
+        bending = length / prop.bending
+        self.yields[0], self.yields[1:] = length / prop.axial, length * length * bending / 12.0
+        self.turns[0], self.turns[1:] = length / prop.torsion, bending
+        # in the plane yielding and turning part at the centroid; out of it at the point at which a force square to
+        # the plane does not twist the chord
+        self.chord = length * shape.along
+        self._middle = shape.start + 0.5 * self.chord
+        self._ways = [shape.along, shape.inward]
+        if len(bent):
+            self._bend()
+
+    def _bend(self) -> None:
+        """Put the bends in."""
+        shape, prop, bent = self.shape, self.prop, self.bent
+        along, inward = shape.along[:, bent], shape.inward[:, bent]
+        radius, angle = shape.radius[bent], shape.angle[bent]
+        arc, half = radius * angle, 0.5 * angle
+        sin_half, cos_half = np.sin(half), np.cos(half)
+        tau = cos_half * along + sin_half * inward
+        beta = cos_half * inward - sin_half * along
+        about = shape.start[:, bent] + radius * inward
+        sine = 2.0 * sin_half * cos_half
+        plus, minus = 0.5 * radius * (angle + sine), 0.5 * radius * (angle - sine)
+        soft, twisting, stretch = 1.0 / prop.bending[bent], 1.0 / prop.torsion[bent], 1.0 / prop.axial[bent]
+        span = 2.0 * radius * sin_half
+        inner = radius * np.sinc(half / np.pi)
+        turn = twisting * plus + soft * minus
+        couple = radius * span * twisting
+        aside = couple / (turn + _TINY)
+        yields, turns = self.yields, self.turns
+        yields[0, bent] = stretch * plus + soft * (radius**2 * plus - inner**2 * arc)
+        yields[1, bent] = (stretch + radius**2 * soft) * minus
+        yields[2, bent] = radius**2 * arc * twisting - couple * aside
+        turns[0, bent], turns[1, bent], turns[2, bent] = turn, twisting * minus + soft * plus, soft * arc
+        self._ways = [way.copy() for way in self._ways]
+        self._ways[0][:, bent], self._ways[1][:, bent] = tau, beta
+        self._middle[:, bent] = about - inner * beta
+        self.chord[:, bent] = span * tau
+        self._about, self._beta, self._aside = about, beta, aside
+        self._plus, self._minus = plus, minus
+
+    @cached_property
+    def ways(self) -> list[Vector]:
+        """The three directions."""
+        one, two = (vector(way, self.live) for way in self._ways)
+        return [one, two, outer(one, two)]
+
+    @cached_property
+    def normal_arm(self) -> Vector:
+        """Movement at O as an element turns by one about its normal."""
+        return outer(vector(self._middle, self.live), self.ways[2])
+
+    @cached_property
+    def other_arms(self) -> list[Vector]:
+        """Movement at O as an element turns by one about its chord, and about the direction to the inside."""
+        other = self._middle
+        if len(self.bent):
+            other = other.copy()
+            other[:, self.bent] = self._about - self._aside * self._beta
+        return [outer(vector(other, self.live), way) for way in self.ways[:2]]
+
+    @cached_property
+    def axes(self) -> Array:
+        """The three directions, (3, direction, element, row)."""
+        return _whole(self.ways, self.shape.length.shape)
+
+    @cached_property
+    def arms(self) -> Array:
+        """Movement at O as an element turns by one about each of them, (3, direction, element, row)."""
+        return _whole([*self.other_arms, self.normal_arm], self.shape.length.shape)
+
+    @cached_property
+    def bow(self) -> Array:
+        """Twist per unit of curvature, (6, element, row) [m]."""
+        turned = self.shape.start + 0.5 * self.shape.length * self.shape.along
+        shift = np.zeros_like(turned)
+        if len(self.bent):
+            tau, beta = (way[:, self.bent] for way in self._ways)
+            radius = self.shape.radius[self.bent]
+            turned[:, self.bent] = self._about
+            shift[:, self.bent] = radius * (self._plus * beta[UP] * tau - self._minus * tau[UP] * beta)
+        return _twist(shift, _rotated_up(self.chord), turned)
+
+    @cached_property
+    def load(self) -> Array:
+        """Wrench of the element's own weight about O, (6, element, row)."""
+        return _wrench(self.shape.length * self._down, self._middle)
+
+    @cached_property
+    def sag(self) -> Array:
+        """Twist of the far end by its own weight, (6, element, row)."""
+        shape, prop, bent = self.shape, self.prop, self.bent
+        sag = _straight_sag(shape, prop, self._down)
         if len(bent):
             part, soft = Shape(*(f[..., bent, :] for f in shape)), Properties(*(f[bent] for f in prop))
-            sag[:, bent] = _bend_sag(part, soft, axes[:, 2, bent], turned[:, bent])
-    return Member(axes, arms, yields, turns, chord, bow, load, sag)
+            sag[:, bent] = _bend_sag(part, soft, self.axes[:, 2, bent], self._about)
+        return sag
+
+    @cached_property
+    def _down(self) -> Array:
+        down = np.zeros_like(self.chord)
+        down[UP] = -self.prop.weight
+        return down
 
 
-def _bend(
-    shape: Shape,
-    prop: Properties,
-    bent: Indices,
-    axes: Array,
-    yields: Array,
-    turns: Array,
-    points: tuple[Array, ...],
-) -> None:
-    """Put the bends in: directions, softness, and the points at which yielding and turning part.
-
-    In the plane that is the arc's centroid; out of it the point at which a force square to the plane does not twist
-    the chord.
-    """
-    middle, other, chord, centre, shift = points
-    along, inward = shape.along[:, bent], shape.inward[:, bent]
-    radius, angle = shape.radius[bent], shape.angle[bent]
-    arc, half = radius * angle, 0.5 * angle
-    sin_half, cos_half = np.sin(half), np.cos(half)
-    tau = cos_half * along + sin_half * inward
-    beta = cos_half * inward - sin_half * along
-    about = shape.start[:, bent] + radius * inward
-    sine = 2.0 * sin_half * cos_half
-    plus, minus = 0.5 * radius * (angle + sine), 0.5 * radius * (angle - sine)
-    soft, twisting, stretch = 1.0 / prop.bending[bent], 1.0 / prop.torsion[bent], 1.0 / prop.axial[bent]
-    span = 2.0 * radius * sin_half
-    inner = radius * np.sinc(half / np.pi)
-    turn = twisting * plus + soft * minus
-    couple = radius * span * twisting
-    outer = couple / (turn + _TINY)
-    axes[:, 0, bent], axes[:, 1, bent] = tau, beta
-    yields[0, bent] = stretch * plus + soft * (radius**2 * plus - inner**2 * arc)
-    yields[1, bent] = (stretch + radius**2 * soft) * minus
-    yields[2, bent] = radius**2 * arc * twisting - couple * outer
-    turns[0, bent], turns[1, bent], turns[2, bent] = turn, twisting * minus + soft * plus, soft * arc
-    middle[:, bent], other[:, bent], centre[:, bent] = about - inner * beta, about - outer * beta, about
-    chord[:, bent] = span * tau
-    shift[:, bent] = radius * (plus * beta[UP] * tau - minus * tau[UP] * beta)
+def _whole(vectors: list[Vector], shape: tuple[int, ...]) -> Array:
+    """Vectors as one array, (3, vector, element, row)."""
+    whole = np.zeros((3, len(vectors), *shape))
+    for n, one in enumerate(vectors):
+        for i, component in enumerate(one):
+            if component is not None:
+                whole[i, n] = component
+    return whole
 
 
 def _straight_sag(shape: Shape, prop: Properties, down: Array) -> Array:
@@ -215,25 +289,37 @@ def compliance(member: Member, parts: tuple[int, ...], directions: tuple[int, ..
     member : the elements.
     parts : components of the twist wanted.
     directions : in which the elements turn; those of yielding follow.
-    work : (2, part, part, element, row), overwritten; the answer is its first half.
+    work : (part, part, element, row), overwritten: the answer.
     """
-    c: Array = work[0]
-    extra: Array = work[1]
-    moves = [i for i in parts if i < 3]
-    turns = [i - 3 for i in parts if i >= 3]
-    whole = np.concatenate([member.arms[moves], member.axes[turns]])
-    for n, k in enumerate(directions):
-        z = whole[:, k]
-        target = extra if n else c
-        np.multiply((member.turns[k] * z)[:, None], z[None], out=target)
-        if n:
-            c += extra
-    top, spare = c[: len(moves), : len(moves)], extra[: len(moves), : len(moves)]
+    sources: list[tuple[list[Array | None], list[Array | None]]] = []
+    for k in directions:
+        arm = member.normal_arm if k == 2 else member.other_arms[k]
+        ways = [arm[i] if i < 3 else member.ways[k][i - 3] for i in parts]
+        sources.append((ways, _softened(member.turns[k], ways)))
     for k in [i for i in range(3) if len(parts) == 6 or i not in directions]:
-        z = member.axes[moves, k]
-        np.multiply((member.yields[k] * z)[:, None], z[None], out=spare)
-        top += spare
-    return c
+        ways = [member.ways[k][i] if i < 3 else None for i in parts]
+        sources.append((ways, _softened(member.yields[k], ways)))
+    spare = np.empty_like(work[0, 0])
+    for i in range(len(parts)):
+        for j in range(i + 1):
+            filled = False
+            for ways, soft in sources:
+                a, b = soft[i], ways[j]
+                if a is None or b is None:
+                    continue
+                np.multiply(a, b, out=spare if filled else work[i, j])
+                if filled:
+                    work[i, j] += spare
+                filled = True
+            if not filled:
+                work[i, j] = 0.0
+            if i != j:
+                work[j, i] = work[i, j]
+    return work
+
+
+def _softened(softness: Array, ways: list[Array | None]) -> list[Array | None]:
+    return [None if way is None else softness * way for way in ways]
 
 
 def _bend_sag(shape: Shape, prop: Properties, normal: Array, centre: Array) -> Array:

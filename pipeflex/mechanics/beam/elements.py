@@ -5,10 +5,12 @@ from dataclasses import dataclass
 import numpy as np
 
 from pipeflex.errors import Fault, InputError, refuse
-from pipeflex.mechanics.beam import compliance
 from pipeflex.mechanics.beam.compliance import Array, Indices, Member, Properties, Shape, cross, dot
 from pipeflex.mechanics.beam.parts import Hold, States, states_first
 from pipeflex.mechanics.beam.run import CHUNK, Run
+
+_KEPT = 4 * CHUNK
+"""Rows of a run that keeps its elements."""
 
 _VERTICAL = 1e-6
 
@@ -51,29 +53,35 @@ def chunks(run: Run) -> list[slice]:
 
 
 def elements(run: Run, rows: slice) -> Elements:
-    """Centre line and stiffness of the elements; kept for a run of one chunk."""
-    if run.rows <= CHUNK and "elements" in run.cache:
-        return run.cache["elements"]  # type: ignore[return-value]
-    plan = run.plan
+    """Centre line and stiffness of the elements; kept for a run of few rows."""
+    if run.rows > _KEPT:
+        return _elements(run, rows)
+    key = ("elements", rows.start)
+    if key not in run.cache:
+        run.cache[key] = _elements(run, rows)
+    return run.cache[key]  # type: ignore[return-value]
+
+
+def _elements(run: Run, rows: slice) -> Elements:
+    plan, live = run.plan, _spaced(run.live)
     bend = plan.bend
     bent, straight = np.flatnonzero(bend >= 0), np.flatnonzero(bend < 0)
-    along = run.along[:, :, rows]
-    cuts = run.cuts[:, rows]
+    corners, along, cuts = run.corners[:, :, rows], run.along[live, :, rows], run.cuts[:, rows]
     leg_s, leg_b, which = plan.leg[straight], plan.leg[bent], bend[bent]
     unit = along[:, leg_s]
     from_, to = cuts[plan.first[straight]], cuts[plan.last[straight]]
-    corners = run.corners[:, :, rows]
     size = (len(bend), corners.shape[2])
-    start, tangent, inward = np.empty((3, *size)), np.empty((3, *size)), np.empty((3, *size))
+    every = np.zeros((3, 3, *size))
+    start, tangent, inward = every[:, live]
     length, radius, angle = np.empty(size), np.zeros(size), np.zeros(size)
-    start[:, straight] = corners[:, leg_s] + from_ * unit
+    start[:, straight] = corners[live][:, leg_s] + from_ * unit
     tangent[:, straight] = unit
     length[straight] = to - from_
-    inward[:, straight] = _beside(run, leg_s, rows)
+    inward[:, straight] = _beside(run, leg_s, rows)[live]
     if len(bent):
         r, phi, lead = run.radius[which, rows], run.angle[which, rows], along[:, leg_b]
-        first = corners[:, leg_b] + cuts[len(run.lengths) + leg_b] * lead
-        side = run.inward[:, which, rows]
+        first = corners[live][:, leg_b] + cuts[len(run.lengths) + leg_b] * lead
+        side = run.inward[live][:, which, rows]
         if plan.begin[bent].any():
             turned = plan.begin[bent, None] * phi
             sine, cosine = np.sin(turned), np.cos(turned)
@@ -86,10 +94,14 @@ def elements(run: Run, rows: slice) -> Elements:
     if len(bent):
         bending[bent] /= run.factor[which, rows]
     prop = Properties(run.axial[plan.piece, rows], bending, run.torsion[plan.piece, rows], run.weight[plan.piece, rows])
-    made = Elements(rows, Shape(start, tangent, inward, length, radius, angle), prop, straight, bent, corners[:, -1])
-    if run.rows <= CHUNK:
-        run.cache["elements"] = made
-    return made
+    return Elements(
+        rows, Shape(every[0], every[1], every[2], length, radius, angle), prop, straight, bent, corners[:, -1]
+    )
+
+
+def _spaced(axes: tuple[int, ...]) -> slice:
+    """The axes as a slice: any two or three of three are evenly spaced."""
+    return slice(axes[0], axes[-1] + 1, axes[1] - axes[0])
 
 
 def _beside(run: Run, leg: Indices, rows: slice) -> Array:
@@ -99,11 +111,12 @@ def _beside(run: Run, leg: Indices, rows: slice) -> Array:
         flat = np.stack([-one[1], one[0], np.zeros_like(one[0])])
         size = np.sqrt(dot(flat, flat))
         return np.where(size > _VERTICAL, flat / np.where(size > _VERTICAL, size, 1.0), [[[1.0]], [[0.0]], [[0.0]]])
-    corner = np.maximum(leg - 1, 0)
-    inward, before = run.inward[:, corner, rows], run.along[:, corner, rows]
-    angle = run.angle[corner, rows]
-    after = np.cos(angle) * inward - np.sin(angle) * before
-    return np.where((leg > 0)[:, None], after, inward)
+    live = _spaced(run.live)
+    inward, before, angle = run.inward[live, :, rows], run.along[live, :-1, rows], run.angle[:, rows]
+    beside = np.zeros((3, len(run.lengths), inward.shape[2]))
+    beside[live, 1:] = np.cos(angle) * inward - np.sin(angle) * before
+    beside[live, 0] = inward[:, 0]
+    return beside[:, leg]
 
 
 def members(made: Elements, run: Run) -> Member:
@@ -117,7 +130,7 @@ def members(made: Elements, run: Run) -> Member:
 
 def of_shape(made: Elements, run: Run) -> Member:
     """Compliance, growth, bow and weight terms of the elements given."""
-    return compliance.members(made.shape, made.prop, made.bent, bool(run.weight.any()))
+    return Member(made.shape, made.prop, made.bent, run.live)
 
 
 def station_points(made: Elements, station: Indices) -> Array:

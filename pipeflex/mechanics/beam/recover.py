@@ -5,7 +5,20 @@ from dataclasses import dataclass
 
 import numpy as np
 
-from pipeflex.mechanics.beam.compliance import UP, Array, Properties, Shape, cross, dot, yielding
+from pipeflex.mechanics.beam.compliance import (
+    UP,
+    Array,
+    Properties,
+    Shape,
+    Vector,
+    cross,
+    dot,
+    inner_product,
+    less,
+    outer,
+    vector,
+    yielding,
+)
 from pipeflex.mechanics.beam.elements import Elements, chunks, elements, members, of_shape, station_points
 from pipeflex.mechanics.beam.parts import States
 from pipeflex.mechanics.beam.run import Run
@@ -51,62 +64,66 @@ class Movements:
 
 def moments(answer: Answer) -> Moments:
     """Moments in local axes along the run."""
-    parts = [_moments(answer, elements(answer.run, rows)) for rows in chunks(answer.run)]
-    return Moments(*(np.concatenate(values, axis=-1) for values in zip(*parts, strict=True)))
+    count, _, n, rows = answer.wrench.shape
+    in_plane, out_plane, torsion, axial = (np.zeros((count, 3, n, rows)) for _ in range(4))
+    whole = Moments(in_plane, out_plane, torsion, axial, np.full((count, n, rows), 0.5))
+    for part in chunks(answer.run):
+        _moments(answer, elements(answer.run, part), whole)
+    return whole
 
 
 def _factor(states: States, count: int) -> Array:
     return np.broadcast_to(np.asarray(states.weight, dtype=float), (count,))[:, None, None]
 
 
-def _moments(answer: Answer, made: Elements) -> tuple[Array, Array, Array, Array, Array]:
-    run, shape = answer.run, made.shape
-    wrench = answer.wrench[..., made.rows].swapaxes(0, 1)
-    force, about = wrench[:3], wrench[3:]
-    _, count, n, rows = force.shape
-    weight = _factor(answer.states, count) * made.prop.weight
+def _moments(answer: Answer, made: Elements, whole: Moments) -> None:
+    """Fill in the moments of a slice of rows."""
+    run, shape, bent, straight, rows = answer.run, made.shape, made.bent, made.straight, made.rows
+    wrench = answer.wrench[..., rows].swapaxes(0, 1)
+    working = [part if part.any() else None for part in wrench]
+    force: Vector = working[:3]
+    about: Vector = working[3:]
+    weight = _factor(answer.states, wrench.shape[1]) * made.prop.weight
     length, along, inward = shape.length, shape.along, shape.inward
-    half = 0.5 * shape.angle
-    sine, cosine = np.sin(half), np.cos(half)
-    middle = np.full((count, n, rows), 0.5)
+    middle = whole.fraction[..., rows]
     weighs = bool(weight.any())
     if weighs:
-        middle[:, made.straight] = _peak(force[..., made.straight, :], weight[:, made.straight], along, length, made)
-    end_tan, end_in = np.empty_like(along), np.empty_like(along)
-    end_tan[:, made.straight] = along[:, made.straight]
-    end_in[:, made.straight] = _after(run, made)
-    chord = 2.0 * shape.radius * sine
-    mid_tan, mid_in = cosine * along + sine * inward, cosine * inward - sine * along
-    bent = made.bent
-    if len(bent):
-        c, s = np.cos(shape.angle[bent]), np.sin(shape.angle[bent])
-        end_tan[:, bent] = c * along[:, bent] + s * inward[:, bent]
-        end_in[:, bent] = c * inward[:, bent] - s * along[:, bent]
-    end_point = shape.start + length * along
-    end_point[:, bent] = shape.start[:, bent] + chord[bent] * mid_tan[:, bent]
+        middle[:, straight] = _peak(wrench[:3, :, straight], weight[:, straight], along, length, made)
+    end_tan, end_in = along.copy(), inward.copy()
+    mid_tan, mid_in = along, inward
+    end_in[:, straight] = _after(run, made)
     mid_point = shape.start[:, None] + (middle * length) * along[:, None]
+    end_point = shape.start + length * along
     if len(bent):
-        bow = shape.radius[bent] * (1.0 - cosine[bent])
-        mid_point[:, :, bent] = (
-            shape.start[:, bent] + shape.radius[bent] * sine[bent] * along[:, bent] + bow * inward[:, bent]
-        )[:, None]
-    out = [np.empty((count, 3, n, rows)) for _ in range(4)]
+        lead, side, first, radius = along[:, bent], inward[:, bent], shape.start[:, bent], shape.radius[bent]
+        half = 0.5 * shape.angle[bent]
+        s, c = np.sin(half), np.cos(half)
+        tangent, inner = c * lead + s * side, c * side - s * lead
+        mid_tan, mid_in = along.copy(), inward.copy()
+        mid_tan[:, bent], mid_in[:, bent] = tangent, inner
+        end_tan[:, bent], end_in[:, bent] = c * tangent + s * inner, c * inner - s * tangent
+        mid_point[:, :, bent] = (first + radius * (s * lead + (1.0 - c) * side))[:, None]
+        end_point[:, bent] = first + 2.0 * radius * s * tangent
     places = (
         (shape.start[:, None], along, inward, np.zeros(())),
         (mid_point, mid_tan, mid_in, middle),
         (end_point[:, None], end_tan, end_in, np.ones(())),
     )
     for i, (point, tangent, inner, fraction) in enumerate(places):
-        f, m = force, about
+        pull, turn = force, about
         if weighs and i < 2:
-            beyond_f, beyond_m = _beyond(made, weight, fraction)
-            f, m = f + beyond_f, m + beyond_m
-        m = m - cross(point, f)
-        out[0][:, i] = dot(m, cross(tangent, inner)[:, None])
-        out[1][:, i] = dot(m, inner[:, None])
-        out[2][:, i] = dot(m, tangent[:, None])
-        out[3][:, i] = dot(f, tangent[:, None])
-    return out[0], out[1], out[2], out[3], middle
+            beyond_force, beyond_moment = _beyond(made, weight, fraction)
+            pull, turn = [*(wrench[:3] + beyond_force)], [*(wrench[3:] + beyond_moment)]
+        there = less(turn, outer(vector(point, run.live), pull))
+        ahead, inside = vector(tangent, run.live), vector(inner, run.live)
+        for field, value in (
+            (whole.in_plane, inner_product(there, outer(ahead, inside))),
+            (whole.out_plane, inner_product(there, inside)),
+            (whole.torsion, inner_product(there, ahead)),
+            (whole.axial, inner_product(pull, ahead)),
+        ):
+            if value is not None:
+                field[:, i, :, rows] = value
 
 
 def _peak(force: Array, weight: Array, along: Array, length: Array, made: Elements) -> Array:
@@ -122,12 +139,10 @@ def _peak(force: Array, weight: Array, along: Array, length: Array, made: Elemen
 
 def _after(run: Run, made: Elements) -> Array:
     """For each straight a vector in the plane of the corner after it (the last one, if any), square to it."""
-    leg = run.plan.leg[made.straight]
-    if run.bends == 0:
-        return made.shape.inward[:, made.straight]
-    last = leg >= run.bends
-    after = run.inward[:, np.minimum(leg, run.bends - 1), made.rows]
-    return np.where(last[:, None], made.shape.inward[:, made.straight], after)
+    leg, after = run.plan.leg[made.straight], made.shape.inward[:, made.straight]
+    before_bend = leg < run.bends
+    after[:, before_bend] = run.inward[:, leg[before_bend], made.rows]
+    return after
 
 
 def _beyond(made: Elements, weight: Array, fraction: Array) -> tuple[Array, Array]:

@@ -17,6 +17,7 @@ from pipeflex.mechanics.beam.parts import Break, End, Number, Placed, PointWeigh
 CHUNK = 1024
 """Rows worked on at a time, so that they stay in the cache."""
 
+_REUSED = 31 << 20
 _STRAIGHT_THROUGH = 1e-6
 _TOUCHING = 1e-9
 
@@ -84,6 +85,14 @@ class Run:
         return int(self.bending.shape[0])
 
     @property
+    def live(self) -> tuple[int, ...]:
+        """Axes along which the run extends at all; all of them where there is no bend."""
+        if "live" not in self.cache:
+            every = tuple(i for i in range(3) if not self.bends or self.corners[i].any())
+            self.cache["live"] = every
+        return self.cache["live"]  # type: ignore[return-value]
+
+    @property
     def bends(self) -> int:
         return int(self.angle.shape[0])
 
@@ -127,6 +136,9 @@ def assemble(
     _check_shape(corners)
     supports, weights, breaks = tuple(supports), tuple(weights), tuple(breaks)
     rows, legs = corners.shape[2], corners.shape[1] - 1
+    if rows > CHUNK:
+        # the C library hands freed blocks back to the system page by page until it has seen so large a one come and go
+        np.empty(_REUSED, np.uint8)
     pieces = legs + len(breaks)
     _check_places((*breaks, *supports, *weights), legs)
 

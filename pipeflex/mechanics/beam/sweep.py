@@ -79,15 +79,17 @@ def linear(run: Run, states: States) -> Answer:
     UnstableLayoutError
         The run floats, or two rigid holds act at one place in one direction.
     """
-    parts = []
+    count, n, rows_ = states.count(), len(run.plan.bend), run.rows
+    held_count = sum(len(s.holds) for s in run.supports)
+    sizes = ((6, n), (held_count,), (3, len(run.supports)), (6,), (6,), (6,))
+    fields = [np.zeros((count, *size, rows_)) for size in sizes]
     work: Work = {}
     for made in (elements(run, rows) for rows in chunks(run)):
         held, member = holds(run, made), members(made, run)
-        wrench, force, *rest = sweep(run, made, member, held, *free_twists(run, states, made, member), work=work)
-        parts.append((wrench, force, on_supports(run, held, force), *rest))
-    if len(parts) == 1:
-        return Answer(run, states, *parts[0])
-    return Answer(run, states, *(np.concatenate(field, axis=-1) for field in zip(*parts, strict=True)))
+        wrench, force, support, *ends = (field[..., made.rows] for field in fields)
+        sweep(run, made, member, held, *free_twists(run, states, made, member), work=work, out=(wrench, force, *ends))
+        support[...] = on_supports(run, held, force)
+    return Answer(run, states, *fields)
 
 
 def on_supports(run: Run, held: Holds, force: Array) -> Array:
@@ -106,7 +108,8 @@ def free_twists(
     count, rows = states.count(), made.rows
     strain, bow = state_strains(run, states, count, rows)
     free = np.zeros((count, 6, *strain.shape[1:]))
-    free[:, :3] = strain[:, None] * member.chord
+    for i in member.live:
+        np.multiply(strain, member.chord[i], out=free[:, i])
     if bow is not None:
         free += bow[:, None] * member.bow
     factor = np.broadcast_to(np.asarray(states.weight, dtype=float), (count,))[:, None, None, None]
@@ -171,6 +174,7 @@ def sweep(
     moved_b: Array,
     target: Array | None = None,
     work: Work | None = None,
+    out: tuple[Array, ...] | None = None,
 ) -> tuple[Array, Array, Array, Array, Array]:
     """Forces from free twists and loads.
 
@@ -185,44 +189,46 @@ def sweep(
     moved_a, moved_b : (state, 6, row), imposed movement of the ends.
     target : (state, hold, row), imposed movement of the holds; 0 unless given.
     work : kept from chunk to chunk.
+    out : zeros to be filled with the answer.
 
     Returns
     -------
     wrench, hold_force, end_a, end_b, start : see `Answer`.
     """
     count, _, n, rows = free.shape
-    out = (
-        np.zeros((count, 6, n, rows)),
-        np.zeros((count, held.line.shape[1], rows)),
-        np.zeros((count, 6, rows)),
-        np.zeros((count, 6, rows)),
-        np.zeros((count, 6, rows)),
-    )
+    if out is None:
+        sizes = ((6, n), (held.line.shape[1],), (6,), (6,), (6,))
+        out = tuple(np.zeros((count, *size, rows)) for size in sizes)
     work = {} if work is None else work
     for parts, directions, which in _halves(run, made, held):
         pick = list(parts)
-        strain, at_a, at_b = free[:, pick], moved_a[:, pick], moved_b[:, pick]
         load, jump = (None if a is None else a[:, pick] for a in (loads, jumps))
+        strain, at_a, at_b = free[:, pick], moved_a[:, pick], moved_b[:, pick]
         pushed = None if target is None else target[:, which]
         causes = (strain, load, jump, at_a, at_b, pushed)
-        part = _Half(run, made, held, parts, which)
-        if len(parts) < 6 and not part.loose and not any(a is not None and a.any() for a in causes):
+        if len(parts) < 6 and not _loose(run, made, pick) and not any(a is not None and a.any() for a in causes):
             continue
         key = (len(parts), n, rows)
         if key not in work:
-            work[key] = np.empty((2, len(parts), len(parts), n, rows))
+            work[key] = np.empty((len(parts), len(parts), n, rows))
+        part = _Half(run, made, held, parts, which)
         c = compliance(member, parts, directions, work[key])
         wrench, force, end_a, end_b, start = part.solve(c, strain, load, jump, at_a, at_b, pushed)
         out[0][:, pick], out[1][:, which] = wrench, force
         out[2][:, pick], out[3][:, pick], out[4][:, pick] = end_a, end_b, start
-    return out
+    return out  # type: ignore[return-value]
+
+
+def _loose(run: Run, made: Elements, pick: list[int]) -> bool:
+    """Whether end A is free along one of the axes in some row."""
+    return bool((_stiffness(run, 0, made.rows)[pick] == 0).any())
 
 
 def _halves(run: Run, made: Elements, held: Holds) -> list[tuple[tuple[int, ...], tuple[int, ...], Indices]]:
     """Components, directions of turning and holds of each independent part of the problem."""
     everything = np.arange(held.line.shape[1])
     for normal in range(3) if run.bends else ():
-        if run.corners[normal, :, made.rows].any():
+        if normal in run.live:
             continue
         off = held.unit[normal] != 0.0
         inside = ~off.any(axis=1)
