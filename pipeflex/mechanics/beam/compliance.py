@@ -58,9 +58,14 @@ class Shape(NamedTuple):
     angle: Array
 
 
+def spaced(axes: tuple[int, ...]) -> slice:
+    """Two or three of the three axes as a slice: they are always evenly spaced."""
+    return slice(axes[0], axes[-1] + 1, axes[1] - axes[0])
+
+
 def vector(values: Array, live: tuple[int, ...]) -> Vector:
-    """The components of (3, ...) that are not zero all along."""
-    return [values[i] if i in live else None for i in range(3)]
+    """A vector from its components along the axes given."""
+    return [values[live.index(i)] if i in live else None for i in range(3)]
 
 
 def outer(a: Vector, b: Vector) -> Vector:
@@ -172,7 +177,7 @@ class Member:
         plus, minus = 0.5 * radius * (angle + sine), 0.5 * radius * (angle - sine)
         soft, twisting, stretch = 1.0 / prop.bending[bent], 1.0 / prop.torsion[bent], 1.0 / prop.axial[bent]
         span = 2.0 * radius * sin_half
-        inner = radius * np.sinc(half / np.pi)
+        inner = radius * np.divide(sin_half, half, out=np.ones_like(half), where=half > 0.0)
         turn = twisting * plus + soft * minus
         couple = radius * span * twisting
         aside = couple / (turn + _TINY)
@@ -191,13 +196,13 @@ class Member:
     @cached_property
     def ways(self) -> list[Vector]:
         """The three directions."""
-        one, two = (vector(way, self.live) for way in self._ways)
+        one, two = (vector(way[spaced(self.live)], self.live) for way in self._ways)
         return [one, two, outer(one, two)]
 
     @cached_property
     def normal_arm(self) -> Vector:
         """Movement at O as an element turns by one about its normal."""
-        return outer(vector(self._middle, self.live), self.ways[2])
+        return outer(vector(self._middle[spaced(self.live)], self.live), self.ways[2])
 
     @cached_property
     def other_arms(self) -> list[Vector]:
@@ -206,7 +211,7 @@ class Member:
         if len(self.bent):
             other = other.copy()
             other[:, self.bent] = self._about - self._aside * self._beta
-        return [outer(vector(other, self.live), way) for way in self.ways[:2]]
+        return [outer(vector(other[spaced(self.live)], self.live), way) for way in self.ways[:2]]
 
     @cached_property
     def axes(self) -> Array:

@@ -5,7 +5,7 @@ from dataclasses import dataclass
 import numpy as np
 
 from pipeflex.errors import Fault, InputError, refuse
-from pipeflex.mechanics.beam.compliance import Array, Indices, Member, Properties, Shape, cross, dot
+from pipeflex.mechanics.beam.compliance import Array, Indices, Member, Properties, Shape, cross, dot, spaced
 from pipeflex.mechanics.beam.parts import Hold, States, states_first
 from pipeflex.mechanics.beam.run import CHUNK, Run
 
@@ -63,7 +63,7 @@ def elements(run: Run, rows: slice) -> Elements:
 
 
 def _elements(run: Run, rows: slice) -> Elements:
-    plan, live = run.plan, _spaced(run.live)
+    plan, live = run.plan, spaced(run.live)
     bend = plan.bend
     bent, straight = np.flatnonzero(bend >= 0), np.flatnonzero(bend < 0)
     corners, along, cuts = run.corners[:, :, rows], run.along[live, :, rows], run.cuts[:, rows]
@@ -99,11 +99,6 @@ def _elements(run: Run, rows: slice) -> Elements:
     )
 
 
-def _spaced(axes: tuple[int, ...]) -> slice:
-    """The axes as a slice: any two or three of three are evenly spaced."""
-    return slice(axes[0], axes[-1] + 1, axes[1] - axes[0])
-
-
 def _beside(run: Run, leg: Indices, rows: slice) -> Array:
     """A unit vector in the plane of a neighbouring corner (the one before, if any), square to the leg."""
     if run.bends == 0:
@@ -111,7 +106,7 @@ def _beside(run: Run, leg: Indices, rows: slice) -> Array:
         flat = np.stack([-one[1], one[0], np.zeros_like(one[0])])
         size = np.sqrt(dot(flat, flat))
         return np.where(size > _VERTICAL, flat / np.where(size > _VERTICAL, size, 1.0), [[[1.0]], [[0.0]], [[0.0]]])
-    live = _spaced(run.live)
+    live = spaced(run.live)
     inward, before, angle = run.inward[live, :, rows], run.along[live, :-1, rows], run.angle[:, rows]
     beside = np.zeros((3, len(run.lengths), inward.shape[2]))
     beside[live, 1:] = np.cos(angle) * inward - np.sin(angle) * before
@@ -158,13 +153,15 @@ def _holds(run: Run, made: Elements) -> Holds:
     along, lateral = support_axes(run, made)
     unit = np.zeros((3, len(given), rows))
     softness = np.empty((len(given), rows))
-    words = np.array([h.direction if isinstance(h.direction, str) else "" for _, h in given])
+    words = [h.direction if isinstance(h.direction, str) else "" for _, h in given]
     for word, axes in (("along", along), ("lateral", lateral)):
-        which = np.flatnonzero(words == word)
+        which = [j for j, one in enumerate(words) if one == word]
         unit[:, which] = axes[:, support[which]]
-    unit[2, words == "vertical"] = 1.0
-    for j in np.flatnonzero(words == "").tolist():
-        unit[:, j] = np.reshape(given[j][1].direction, (3, 1))
+    for j, (_, hold) in enumerate(given):
+        if words[j] == "vertical":
+            unit[2, j] = 1.0
+        elif not words[j]:
+            unit[:, j] = np.reshape(hold.direction, (3, 1))  # type: ignore[arg-type]
     _unit_length(run, unit, support)
     for j, (_, hold) in enumerate(given):
         softness[j] = hold.stiffness if np.ndim(hold.stiffness) == 0 else hold.stiffness[made.rows]  # type: ignore[index]

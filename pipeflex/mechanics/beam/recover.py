@@ -16,6 +16,7 @@ from pipeflex.mechanics.beam.compliance import (
     inner_product,
     less,
     outer,
+    spaced,
     vector,
     yielding,
 )
@@ -46,7 +47,10 @@ class Moments:
 
     def resultant(self) -> Array:
         """All three moments together [N*m]."""
-        return np.sqrt(self.in_plane**2 + self.out_plane**2 + self.torsion**2)
+        squares = self.in_plane**2
+        squares += self.out_plane**2
+        squares += self.torsion**2
+        return np.sqrt(squares, out=squares)
 
 
 @dataclass(frozen=True, slots=True, eq=False)
@@ -84,18 +88,18 @@ def _moments(answer: Answer, made: Elements, whole: Moments) -> None:
     force: Vector = working[:3]
     about: Vector = working[3:]
     weight = _factor(answer.states, wrench.shape[1]) * made.prop.weight
-    length, along, inward = shape.length, shape.along, shape.inward
+    live = spaced(run.live)
+    start, along, inward, length = shape.start[live], shape.along[live], shape.inward[live], shape.length
     middle = whole.fraction[..., rows]
     weighs = bool(weight.any())
     if weighs:
-        middle[:, straight] = _peak(wrench[:3, :, straight], weight[:, straight], along, length, made)
-    end_tan, end_in = along.copy(), inward.copy()
-    mid_tan, mid_in = along, inward
-    end_in[:, straight] = _after(run, made)
-    mid_point = shape.start[:, None] + (middle * length) * along[:, None]
-    end_point = shape.start + length * along
+        middle[:, straight] = _peak(wrench[:3, :, straight], weight[:, straight], shape.along, length, made)
+    mid_tan, mid_in, end_tan, end_in = along, inward, along.copy(), inward.copy()
+    end_in[:, straight] = _after(run, made)[live]
+    mid_point = start[:, None] + (middle * length) * along[:, None]
+    end_point = start + length * along
     if len(bent):
-        lead, side, first, radius = along[:, bent], inward[:, bent], shape.start[:, bent], shape.radius[bent]
+        lead, side, first, radius = along[:, bent], inward[:, bent], start[:, bent], shape.radius[bent]
         half = 0.5 * shape.angle[bent]
         s, c = np.sin(half), np.cos(half)
         tangent, inner = c * lead + s * side, c * side - s * lead
@@ -105,7 +109,7 @@ def _moments(answer: Answer, made: Elements, whole: Moments) -> None:
         mid_point[:, :, bent] = (first + radius * (s * lead + (1.0 - c) * side))[:, None]
         end_point[:, bent] = first + 2.0 * radius * s * tangent
     places = (
-        (shape.start[:, None], along, inward, np.zeros(())),
+        (start[:, None], along, inward, np.zeros(())),
         (mid_point, mid_tan, mid_in, middle),
         (end_point[:, None], end_tan, end_in, np.ones(())),
     )

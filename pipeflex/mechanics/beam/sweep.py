@@ -156,10 +156,10 @@ def end_lines(point: Array) -> Array:
 
 
 def _stiffness(run: Run, end: int, rows: slice) -> Array:
-    whole = np.empty((6, run.rows))
+    whole = np.empty((6, rows.stop - rows.start))
     for i, stiffness in enumerate(run.ends[end].stiffness):
-        whole[i] = stiffness
-    return whole[:, rows]
+        whole[i] = np.broadcast_to(stiffness, run.rows)[rows]
+    return whole
 
 
 def sweep(
@@ -200,18 +200,20 @@ def sweep(
         sizes = ((6, n), (held.line.shape[1],), (6,), (6,), (6,))
         out = tuple(np.zeros((count, *size, rows)) for size in sizes)
     work = {} if work is None else work
+    stiff = (_stiffness(run, 0, made.rows), _stiffness(run, 1, made.rows))
     for parts, directions, which in _halves(run, made, held):
         pick = list(parts)
         load, jump = (None if a is None else a[:, pick] for a in (loads, jumps))
         strain, at_a, at_b = free[:, pick], moved_a[:, pick], moved_b[:, pick]
         pushed = None if target is None else target[:, which]
         causes = (strain, load, jump, at_a, at_b, pushed)
-        if len(parts) < 6 and not _loose(run, made, pick) and not any(a is not None and a.any() for a in causes):
+        free_end = (stiff[0][pick] == 0).any()
+        if len(parts) < 6 and not free_end and not any(a is not None and a.any() for a in causes):
             continue
         key = (len(parts), n, rows)
         if key not in work:
             work[key] = np.empty((len(parts), len(parts), n, rows))
-        part = _Half(run, made, held, parts, which)
+        part = _Half(run, made, held, stiff, parts, which)
         c = compliance(member, parts, directions, work[key])
         wrench, force, end_a, end_b, start = part.solve(c, strain, load, jump, at_a, at_b, pushed)
         out[0][:, pick], out[1][:, which] = wrench, force
@@ -219,23 +221,15 @@ def sweep(
     return out  # type: ignore[return-value]
 
 
-def _loose(run: Run, made: Elements, pick: list[int]) -> bool:
-    """Whether end A is free along one of the axes in some row."""
-    return bool((_stiffness(run, 0, made.rows)[pick] == 0).any())
-
-
 def _halves(run: Run, made: Elements, held: Holds) -> list[tuple[tuple[int, ...], tuple[int, ...], Indices]]:
     """Components, directions of turning and holds of each independent part of the problem."""
     everything = np.arange(held.line.shape[1])
-    for normal in range(3) if run.bends else ():
-        if normal in run.live:
-            continue
-        off = held.unit[normal] != 0.0
-        inside = ~off.any(axis=1)
-        square = ~np.delete(held.unit, normal, axis=0).any(axis=(0, 2))
+    for normal in {0, 1, 2} - set(run.live):
+        inside = ~held.unit[normal].any(axis=1)
+        square = ~held.unit[list(run.live)].any(axis=(0, 2))
         if (inside | square).all():
-            plane = (*(i for i in range(3) if i != normal), 3 + normal)
-            rest = (normal, *(3 + i for i in range(3) if i != normal))
+            plane = (*run.live, 3 + normal)
+            rest = (normal, *(3 + i for i in run.live))
             return [(plane, (2,), np.flatnonzero(inside)), (rest, (0, 1), np.flatnonzero(~inside))]
     return [(tuple(range(6)), (0, 1, 2), everything)]
 
@@ -243,13 +237,21 @@ def _halves(run: Run, made: Elements, held: Holds) -> list[tuple[tuple[int, ...]
 class _Half:
     """The sweep over some components of twist and wrench."""
 
-    def __init__(self, run: Run, made: Elements, held: Holds, parts: tuple[int, ...], which: Indices) -> None:
+    def __init__(
+        self,
+        run: Run,
+        made: Elements,
+        held: Holds,
+        stiff: tuple[Array, Array],
+        parts: tuple[int, ...],
+        which: Indices,
+    ) -> None:
         self.run, self.which, self.parts = run, which, parts
         self.softness, self.support = held.softness[which], held.support[which]
         pick = list(parts)
         self.lines = held.line[pick][:, which]
         self.tip = end_lines(made.end)[pick][:, pick]
-        self.stiff_a, self.stiff_b = _stiffness(run, 0, made.rows)[pick], _stiffness(run, 1, made.rows)[pick]
+        self.stiff_a, self.stiff_b = stiff[0][pick], stiff[1][pick]
         self.loose: list[int] = np.flatnonzero((self.stiff_a == 0).any(axis=1)).tolist()
         with np.errstate(divide="ignore"):
             self.soft_a, self.soft_b = 1.0 / self.stiff_a, 1.0 / self.stiff_b
@@ -259,9 +261,11 @@ class _Half:
         self.at_station: dict[int, list[int]] = {}
         for hold, station in enumerate(held.station[which].tolist()):
             self.at_station.setdefault(station, []).append(hold)
-        length = made.shape.length
-        near = (length <= _TOUCHING * length.sum(axis=0)).any(axis=1)
-        self.same_place = set((np.flatnonzero(near) + 1).tolist())
+        self.same_place: set[int] = set()
+        if self.at_station:
+            length = made.shape.length
+            near = (length <= _TOUCHING * length.sum(axis=0)).any(axis=1)
+            self.same_place.update((np.flatnonzero(near) + 1).tolist())
         self.steps: list[_Step] = []
 
     def solve(
@@ -329,7 +333,8 @@ class _Half:
         if station not in self.same_place:
             self.before = self.c[:p, :p].copy()
         lines = self.lines[:, here]
-        reach = (lines * np.einsum("ijr,jhr->ihr", self.before, lines)).sum(axis=0)
+        alone = len(here) == 1 and station not in self.same_place
+        reach = np.zeros((1, 1)) if alone else (lines * np.einsum("ijr,jhr->ihr", self.before, lines)).sum(axis=0)
         for n, hold in enumerate(here):
             aim = 0.0 if target is None else target[:, hold]
             self._step(station, hold, self.lines[:, hold], self.softness[hold], aim, reach[n])
