@@ -100,10 +100,12 @@ class Contacts:
         self.laws, self.stiffness, self.size = laws, stiffness, np.abs(stiffness)
         self.paired = laws.partner != np.arange(count)
         self.discs = np.flatnonzero(self.paired)
+        self.pairs = np.eye(count)
+        self.pairs[self.discs, laws.partner[self.discs]] = 1.0
         self.sums = np.zeros((len(stiffness), count))
         self.sums[laws.dof, np.arange(count)] = 1.0
         self.diagonal = np.arange(len(stiffness))
-        self.pushing = np.flatnonzero(laws.pushes)
+        self.floor = np.where(laws.pushes, 0.0, -np.inf)
         self.shared = len(np.unique(laws.dof)) < count
         self.rigid = laws.give == 0.0
         self.springs = np.where(self.rigid, 0.0, 1.0 / np.where(self.rigid, 1.0, laws.give))
@@ -164,14 +166,12 @@ class Contacts:
     def _product(self, a: Array, b: Array) -> Array:
         """Scalar product of what the laws have in their directions: of both for a disc."""
         product: Array = a * b
-        return product + np.where(self.paired, product[self.laws.partner], 0.0) if len(self.discs) else product
+        return self.pairs @ product if len(self.discs) else product
 
     def _sizes(self, soft: _Softness, trial: Array) -> tuple[Array, Mask]:
         """Size of the trial, and which laws give anything at all."""
         size = np.sqrt(self._product(trial, trial))
-        acts = size > soft.dead
-        acts[self.pushing] &= trial[self.pushing] > 0.0
-        return size, acts
+        return size, (size > soft.dead) & (trial > self.floor)
 
     def _given(self, step: _Step, soft: _Softness, trial: Array) -> Array:
         size, acts = self._sizes(soft, trial)
@@ -228,7 +228,7 @@ class Contacts:
             held = step.closed + self.stiffness @ u
             force[rigid] = (held - self.sums @ force)[fixed]
             given = self._given(step, self.even, self._trial(step, self.even, u, force))
-            left = max(float(np.abs(given - force).max()), float(np.abs(held - self.sums @ given).max()))
+            left = float(np.abs(np.concatenate([given - force, held - self.sums @ given])).max())
             if left <= self._accuracy(u, given):
                 return Balance(u, given, left, used, True)
         return None

@@ -161,7 +161,7 @@ def _holds(run: Run, made: Elements) -> Holds:
         if words[j] == "vertical":
             unit[2, j] = 1.0
         elif not words[j]:
-            unit[:, j] = np.reshape(hold.direction, (3, 1))  # type: ignore[arg-type]
+            unit[:, j] = np.reshape(hold.direction, (3, 1))
     _unit_length(run, unit, support)
     for j, (_, hold) in enumerate(given):
         softness[j] = hold.stiffness if np.ndim(hold.stiffness) == 0 else hold.stiffness[made.rows]  # type: ignore[index]

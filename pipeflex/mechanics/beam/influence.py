@@ -5,11 +5,12 @@ from dataclasses import dataclass
 import numpy as np
 
 from pipeflex.errors import Fault, InputError, refuse
+from pipeflex.mechanics.beam.causes import point_wrenches
 from pipeflex.mechanics.beam.compliance import Array
 from pipeflex.mechanics.beam.elements import Holds, elements, holds, members
 from pipeflex.mechanics.beam.parts import States, states_first
 from pipeflex.mechanics.beam.run import Run
-from pipeflex.mechanics.beam.sweep import Answer, on_supports, point_wrenches, sweep
+from pipeflex.mechanics.beam.sweep import Answer, on_supports, sweep
 
 
 @dataclass(frozen=True, slots=True, eq=False)

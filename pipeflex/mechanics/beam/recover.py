@@ -1,10 +1,11 @@
 """From the wrenches of an answer: moments in local axes, movements and rotations anywhere, equilibrium."""
 
 from collections.abc import Sequence
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 
 import numpy as np
 
+from pipeflex.mechanics.beam.causes import own_twists, point_wrenches, twists
 from pipeflex.mechanics.beam.compliance import (
     UP,
     Array,
@@ -23,7 +24,7 @@ from pipeflex.mechanics.beam.compliance import (
 from pipeflex.mechanics.beam.elements import Elements, chunks, elements, members, of_shape, station_points
 from pipeflex.mechanics.beam.parts import States
 from pipeflex.mechanics.beam.run import Run
-from pipeflex.mechanics.beam.sweep import Answer, free_twists, point_wrenches, twists
+from pipeflex.mechanics.beam.sweep import Answer
 
 POINTS = ("start", "middle", "end")
 
@@ -173,7 +174,7 @@ def _beyond(made: Elements, weight: Array, fraction: Array) -> tuple[Array, Arra
 def _twists(answer: Answer, made: Elements) -> Array:
     """Twist about O at every station, (state, 6, station, row)."""
     member = members(made, answer.run)
-    free = free_twists(answer.run, answer.states, made, member)[0]
+    free = own_twists(answer.run, answer.states, made, member)
     return twists(member, free, answer.wrench[..., made.rows], answer.start[..., made.rows])
 
 
@@ -207,35 +208,29 @@ def movements(answer: Answer, fractions: Sequence[float] = (0.0, 0.5, 1.0)) -> M
 
 
 def _movements(answer: Answer, made: Elements, fractions: Sequence[float]) -> tuple[Array, Array, Array]:
-    run, shape = answer.run, made.shape
-    start = _twists(answer, made)[:, :, :-1]
-    wrench = answer.wrench[..., made.rows]
-    count = len(wrench)
-    weight = _factor(answer.states, count) * made.prop.weight
-    points, moved, turned = [], [], []
-    for fraction in fractions:
-        part = _part(made, fraction)
-        member = of_shape(part, run)
-        force, moment = _beyond(made, weight, np.full(weight.shape, fraction))
-        there = wrench + np.concatenate([force, moment]).swapaxes(0, 1)
-        twist = start + free_twists(run, answer.states, part, member)[0] + yielding(member, there)
-        point = shape.start + member.chord
-        points.append(point + run.origin[:, None, made.rows])
-        moved.append(_moved(twist, point))
-        turned.append(twist[:, 3:])
-    rows = shape.length.shape[1]
-    return (
-        np.stack(points, axis=2).reshape(3, -1, rows),
-        np.stack(moved, axis=3).reshape(count, 3, -1, rows),
-        np.stack(turned, axis=3).reshape(count, 3, -1, rows),
-    )
+    """All fractions at once, each in a row of its own: row by row, fraction by fraction."""
+    run, rows, times = answer.run, made.end.shape[1], len(fractions)
 
+    def spread(values: Array) -> Array:
+        return np.repeat(values, times, axis=-1)
 
-def _part(made: Elements, fraction: float) -> Elements:
-    """The elements from their start to a fraction of them."""
-    shape = made.shape
-    part = Shape(shape.start, shape.along, shape.inward, fraction * shape.length, shape.radius, fraction * shape.angle)
-    return Elements(made.rows, part, Properties(*made.prop), made.straight, made.bent, made.end)
+    def places(values: Array) -> Array:
+        whole = values.reshape(*values.shape[:-1], rows, times).swapaxes(-1, -2)
+        return whole.reshape(*values.shape[:-2], -1, rows)
+
+    share = np.tile(np.array(fractions, dtype=float), rows)
+    shape, prop = Shape(*(spread(v) for v in made.shape)), Properties(*(spread(v) for v in made.prop))
+    whole = Elements(made.rows, shape, prop, made.straight, made.bent, spread(made.end))
+    part = replace(whole, shape=shape._replace(length=share * shape.length, angle=share * shape.angle))
+    member, wrench = of_shape(part, run), spread(answer.wrench[..., made.rows])
+    weight = _factor(answer.states, len(wrench)) * prop.weight
+    if weight.any():
+        wrench = wrench + np.concatenate(_beyond(whole, weight, share)).swapaxes(0, 1)
+    free = own_twists(run, answer.states, part, member, spread)
+    twist = spread(_twists(answer, made)[:, :, :-1]) + free + yielding(member, wrench)
+    point = shape.start + member.chord
+    origin = spread(run.origin[:, made.rows])
+    return places(point + origin[:, None]), places(_moved(twist, point)), places(twist[:, 3:])
 
 
 def residual(answer: Answer) -> Array:

@@ -15,7 +15,8 @@ from dataclasses import dataclass
 import numpy as np
 
 from pipeflex.errors import Fault, UnstableLayoutError, refuse
-from pipeflex.mechanics.beam.compliance import UP, Array, Indices, Member, compliance, cross, yielding
+from pipeflex.mechanics.beam.causes import free_twists
+from pipeflex.mechanics.beam.compliance import Array, Indices, Member, compliance
 from pipeflex.mechanics.beam.elements import (
     Elements,
     Holds,
@@ -23,10 +24,8 @@ from pipeflex.mechanics.beam.elements import (
     elements,
     holds,
     members,
-    state_strains,
-    station_points,
 )
-from pipeflex.mechanics.beam.parts import States, states_first
+from pipeflex.mechanics.beam.parts import States
 from pipeflex.mechanics.beam.run import Run
 
 _SAME = 1e-12
@@ -99,48 +98,6 @@ def on_supports(run: Run, held: Holds, force: Array) -> Array:
     for i, support in enumerate(held.support):
         gathered[:, :, support] += vectors[:, :, i]
     return gathered
-
-
-def free_twists(
-    run: Run, states: States, made: Elements, member: Member
-) -> tuple[Array, Array | None, Array | None, Array, Array]:
-    """What the states put into the sweep: `free`, `loads`, `jumps`, `moved_a` and `moved_b` of `sweep`."""
-    count, rows = states.count(), made.rows
-    strain, bow = state_strains(run, states, count, rows)
-    free = np.zeros((count, 6, *strain.shape[1:]))
-    for i in member.live:
-        np.multiply(strain, member.chord[i], out=free[:, i])
-    if bow is not None:
-        free += bow[:, None] * member.bow
-    factor = np.broadcast_to(np.asarray(states.weight, dtype=float), (count,))[:, None, None, None]
-    loads = jumps = None
-    if factor.any() and run.weight.any():
-        free += factor * member.sag
-        loads = factor * member.load
-    if factor.any() and run.weights:
-        jumps = factor * point_wrenches(run, made)
-    moved = [
-        np.zeros((count, 6, made.end.shape[1])) if m is None else states_first(m, (count, 6, run.rows))[:, :, rows]
-        for m in (states.movement_a, states.movement_b)
-    ]
-    return free, loads, jumps, moved[0], moved[1]
-
-
-def twists(member: Member, free: Array, wrench: Array, start: Array) -> Array:
-    """Twist about O at every station, (state, 6, station, row)."""
-    first = start[:, :, None]
-    return np.concatenate([first, first + np.cumsum(free + yielding(member, wrench), axis=2)], axis=2)
-
-
-def point_wrenches(run: Run, made: Elements) -> Array:
-    """Wrench about O of the concentrated weights at each station, (6, station, row)."""
-    jumps = np.zeros((6, len(made.shape.length) + 1, made.end.shape[1]))
-    for weight, station in zip(run.weights, run.plan.weight_station, strict=True):
-        force = np.zeros((3, made.end.shape[1]))
-        force[UP] = -(weight.force if np.ndim(weight.force) == 0 else weight.force[made.rows])  # type: ignore[index]
-        point = station_points(made, np.array([station]))[:, 0]
-        jumps[:, station] += np.concatenate([force, cross(point, force)])
-    return jumps
 
 
 def end_lines(point: Array) -> Array:
