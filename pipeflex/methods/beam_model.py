@@ -56,11 +56,10 @@ def pieces_of(design: Design) -> list[Piece]:
     made: list[Piece] = []
     for leg in range(design.layout.leg_count):
         own = sorted((s for s in design.layout.segments if s.leg == leg + 1), key=lambda s: float(np.ravel(s.start)[0]))
-        length = design.layout.leg_lengths()[leg]
         for s in own:
             if np.any(np.asarray(s.start) > 0):
                 made.append(Piece(leg, design.pipe, 0.0, s.start))
-            whole = bool(np.all(np.asarray(s.end) >= length))
+            whole = bool(np.all(np.asarray(s.end) >= design.layout.leg_lengths()[leg]))
             made.append(Piece(leg, s.pipe or design.pipe, s.temperature_offset, None if whole else s.end))
         if not own or made[-1].end is not None:
             made.append(Piece(leg, design.pipe, 0.0, None))
@@ -90,10 +89,9 @@ def build(
     """
     layout, rows = design.layout, design.rows or 1
     pieces = pieces_of(design)
-    sections = [_section(p.pipe, rows) for p in pieces]
-    modulus = np.stack([
-        basis.E_a if p.pipe is design.pipe else _modulus(p.pipe, np.full(rows, REFERENCE)) for p in pieces
-    ])  # fmt: skip
+    pipes = {id(p.pipe): p.pipe for p in pieces}
+    numbers = {key: (*_section(pipe, rows), _at_reference(pipe, design, basis)) for key, pipe in pipes.items()}
+    area, inertia, weight, modulus = (np.stack(v) for v in zip(*(numbers[id(p.pipe)] for p in pieces), strict=True))
     breaks = [Break(leg=p.leg, distance=p.end) for p in pieces if p.end is not None]
     guides = _guides(design)
     stops = _given(design, "line stop")
@@ -105,12 +103,12 @@ def build(
     radius = np.stack([np.broadcast_to(layout.corner(i).radius, (rows,)) for i in range(layout.leg_count - 1)])
     run = assemble(
         corners,
-        Section(np.stack([s[0] for s in sections]), np.stack([s[1] for s in sections])),
+        Section(area, inertia),
         modulus=modulus,
         poisson=basis.nu,
         radius=radius,
         bend_factor=np.stack([np.broadcast_to(k, (rows,)) for k in factors]),
-        weight=np.stack([s[2] for s in sections]) if rests else 0.0,
+        weight=weight if rests else 0.0,
         supports=supports,
         weights=[
             PointWeight(force=w.mass * section.STANDARD_GRAVITY, leg=w.leg - 1, distance=w.distance, tag=w.name)
@@ -144,6 +142,10 @@ def _section(pipe: Pipe, rows: int) -> tuple[Rows, Rows, Rows]:
     )
     w = section.line_weight(section.metal_mass(rho, A), section.contents_mass(pipe.contents_density, D_i), covering)
     return A, section.second_moment(D_o, D_i), np.broadcast_to(w, (rows,))
+
+
+def _at_reference(pipe: Pipe, design: Design, basis: Basis) -> Rows:
+    return basis.E_a if pipe is design.pipe else _modulus(pipe, np.full(design.rows or 1, REFERENCE))
 
 
 def _modulus(pipe: Pipe, t: Rows) -> Rows:
@@ -260,7 +262,7 @@ def modulus_ratio(design: Design, basis: Basis) -> Rows:
     for p in pieces_of(design):
         if p.pipe is design.pipe and not np.any(p.offset):
             continue
-        E_a = _modulus(p.pipe, np.full(rows, REFERENCE))
+        E_a = _at_reference(p.pipe, design, basis)
         hot = [_modulus(p.pipe, np.broadcast_to(c.temperature, (rows,)) + p.offset) for c in design.duty.cases]
         best = np.maximum(best, np.stack(hot) / E_a)
     return best

@@ -86,14 +86,19 @@ def sections_of(design: Design, start: Basis, model: Model, factors: list[dict[s
     """What the stresses of every element need."""
     plan, rows = model.run.plan, design.rows or 1
     pieces = pieces_of(design)
-    numbers = [_piece_numbers(design, start, p) for p in pieces]
-    Z, A, Z_c, A_c, A_i, S_A, S_h = (np.stack([n[j] for n in numbers])[plan.piece] for j in range(7))
+    if design.layout.segments:
+        each = [_piece_numbers(design, start, p) for p in pieces]
+        numbers = [np.stack(v)[plan.piece] for v in zip(*each, strict=True)]
+        bent = np.flatnonzero(plan.bend >= 0)
+        for allowable in numbers[5:]:  # a bend is of both its neighbours: the weaker one counts
+            allowable[bent] = np.minimum(allowable[bent], allowable[bent + 1])
+    else:
+        numbers = [np.broadcast_to(v, (len(plan.leg), rows)) for v in _piece_numbers(design, start, pieces[0])]
+    Z, A, Z_c, A_c, A_i, S_A, S_h = numbers
     i_i, i_o, i_a = (np.ones((3, len(plan.leg), rows)) for _ in range(3))
     for e, bend in enumerate(plan.bend):
         if bend >= 0:
             i_i[:, e], i_o[:, e] = factors[bend]["i_i"], factors[bend]["i_o"]
-            for allowable in (S_A, S_h):  # a bend is of both its neighbours: the weaker one counts
-                allowable[e] = np.minimum(allowable[e], allowable[e + 1])
     for corner, f in enumerate(factors):
         if (plan.bend == corner).any():
             continue
@@ -218,18 +223,16 @@ def _by_code(design: Design, s: Sections, m: dict[str, Rows]) -> Rows:
 
 
 def _governing(s: Sections, every: Rows, m: dict[str, Rows]) -> Range:
-    rows = every.shape[-1]
-    ratio = (every / s.S_A).reshape(-1, rows)
+    ratio = (every / s.S_A).reshape(-1, every.shape[-1])
     place = ratio.argmax(axis=0)
-    numbers = {**m, "i_i": s.i_i, "i_o": s.i_o, "i_a": s.i_a}
-    for name in ("Z", "A", "S_A"):
-        numbers[name] = np.broadcast_to(getattr(s, name), every.shape)
+    at = (*np.divmod(place, every.shape[1]), np.arange(every.shape[-1]))
+    numbers = {**m, "i_i": s.i_i, "i_o": s.i_o, "i_a": s.i_a, "Z": s.Z, "A": s.A}
 
     def there(values: Rows) -> Rows:
-        return np.asarray(np.take_along_axis(values.reshape(-1, rows), place[None], axis=0)[0])
+        return np.asarray(np.broadcast_to(values, every.shape)[at])
 
     pool = {k: there(v) for k, v in numbers.items()}
-    return Range(every=every, place=place, S_E=there(every), S_A=pool.pop("S_A"), pool=pool, all_moments=m)
+    return Range(every=every, place=place, S_E=there(every), S_A=there(s.S_A), pool=pool, all_moments=m)
 
 
 def trace_range(design: Design, sections: Sections, found: Range, calc: Calc) -> None:
