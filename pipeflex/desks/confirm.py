@@ -10,7 +10,7 @@ from pipeflex import present
 from pipeflex.data.materials import MATERIALS
 from pipeflex.data.tables import table
 from pipeflex.desks.bound import plain_text
-from pipeflex.desks.entry import Button, EntryField, Note, Panel, Part, Row
+from pipeflex.desks.entry import Button, EntryField, Note, Part, Row
 from pipeflex.desks.trade import with_material
 from pipeflex.errors import Fault, InputError, MissingInput, PipeflexError
 from pipeflex.files import user_folder
@@ -24,7 +24,7 @@ from pipeflex.present import UnitSystem
 from pipeflex.units import parse
 
 if TYPE_CHECKING:
-    from pipeflex.desks.core import Desk
+    from pipeflex.desks.screen import Screen
 
 
 _WORDS: Final = (
@@ -86,10 +86,10 @@ def _row(id_: str, column: str, temperature: float) -> Iterator[Asked]:
 class ConfirmBand:
     """The band: initials and date once, then a line for each value."""
 
-    def __init__(self, desk: Desk) -> None:
+    def __init__(self, desk: Screen) -> None:
         self.desk = desk
         self.by, self.date = "", ""
-        self.panel = Panel(problem=desk.tell)
+        self.parts: tuple[Part, ...] = ()
         self._shown: tuple[object, ...] = ()
 
     def fill(self) -> None:
@@ -97,12 +97,14 @@ class ConfirmBand:
         design = self.desk.design
         wanted = asked(design) if design is not None else ()
         units = self.desk.look.units
-        if self._shown == (wanted, units):
-            return
-        self._shown = (wanted, units)
+        if self._shown != (wanted, units):
+            self._shown = (wanted, units)
+            self.parts = self._lines(wanted, units)
+        self.desk.arrange_foot()
+
+    def _lines(self, wanted: tuple[Asked, ...], units: UnitSystem) -> tuple[Part, ...]:
         if not wanted:
-            self.panel.arrange(Note("Every table value that this design uses was read or confirmed."))
-            return
+            return (Note("Every table value that this design uses was read or confirmed."),)
         known = {(c.table, c.row, round(c.temperature, 3)): c for c in user_folder.proposed()}
         who = Row(
             EntryField("Initials", self.by, self._keep("by")),
@@ -115,7 +117,7 @@ class ConfirmBand:
                 lines.append(Note(one.title))
                 title = one.title
             lines.append(self._line(one, known.get(one.key), units))
-        self.panel.arrange(*lines)
+        return tuple(lines)
 
     def _line(self, one: Asked, known: Confirmed | None, units: UnitSystem) -> Part:
         unit = ascii_unit(present.display(one.kind, units).unit)
@@ -154,4 +156,3 @@ class ConfirmBand:
         self.desk.adopt(with_material(said, design.pipe.material.key))
         if remember:
             user_folder.remember(one)
-        self.fill()

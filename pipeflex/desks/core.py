@@ -92,11 +92,13 @@ class Desk:
         self.look = Look(units or "metric")
         self.box = DeskBox([], self.title)
         self._successor: Desk | None = None
-        before = _OPEN.get(self.file.key)
+        self.before = _OPEN.get(self.file.key)
+        """The desk of an earlier run of the cell, while it is taken over."""
         self.read_again()
         _OPEN[self.file.key] = self
-        if before is not None:
-            self._inherit(before)
+        if self.before is not None:
+            self._inherit(self.before)
+            self.before = None
 
     # --- what a kind of desk adds --------------------------------------------------------------------
 
@@ -336,7 +338,7 @@ class Desk:
     def _inherit(self, before: Desk) -> None:
         """What the desk of an earlier run of the cell knew and the file does not; it hands on what still arrives."""
         before._following.stop()
-        if self._asked is None and before.design is not None:
+        if self._asked is None and before.design is not None and before.look.units != self.look.units:
             self.set_units(before.look.units)
         if self.design is not None and before.design == self.design:
             self._past, self._now = before._past, before._now

@@ -15,12 +15,14 @@ from pipeflex.desks import shown
 from pipeflex.desks.bound import Words
 from pipeflex.desks.confirm import ConfirmBand
 from pipeflex.desks.core import Desk
-from pipeflex.desks.entry import Band, Button, Headline, Note, Panel, Row
+from pipeflex.desks.entry import Button, Headline, Note, Panel, Row
 from pipeflex.desks.figure import figure
 from pipeflex.desks.handing import Handing
+from pipeflex.desks.lid import Lid
 from pipeflex.desks.shield import shielded
 from pipeflex.desks.static import StaticCopy
 from pipeflex.desks.view import PictureView
+from pipeflex.model.outcome import Outcome
 from pipeflex.model.words import Verdict
 from pipeflex.sheet import Sheet, scene, svg
 from pipeflex.sheet.headline import headline
@@ -62,7 +64,7 @@ class Screen(Desk):
     def compose(self) -> Sequence[ipywidgets.Widget]:
         self.view, self.viewpoint, self._lit = "plan", 0, ""
         self.handing = Handing(self)
-        self.picture = PictureView(height=_LOWEST, colours=dict(COLOURS))
+        self.picture = PictureView(height=_LOWEST, colours=dict(COLOURS), width=self._known_width())
         self.picture.observe(shielded(lambda _: self.draw(), self.tell), "width")
         self.checks = ipywidgets.HTML()
         self.views = {name: Button(name, self._viewer(name), pressed=name == self.view) for name in VIEWS}
@@ -72,8 +74,13 @@ class Screen(Desk):
             [Panel(Row(*self.views.values(), self.turn, self.said), problem=self.tell), self.picture, self.checks],
             layout=ipywidgets.Layout(flex="1 1 0", min_width="0", overflow="hidden"),
         )
-        body = ipywidgets.HBox([self.entries(), right], layout=ipywidgets.Layout(width="100%", grid_gap="12px"))
+        self.form = self.entries()
+        body = ipywidgets.HBox([self.form, right], layout=ipywidgets.Layout(width="100%", grid_gap="12px"))
         return [self._top(), body, *self._bottom()]
+
+    def _known_width(self) -> int:
+        """Width of the picture in an earlier run of the cell: so it need not be drawn twice."""
+        return self.before.picture.width if isinstance(self.before, Screen) and self.before.design is not None else 0
 
     def _top(self) -> Panel:
         self.head, self.memory, self.trouble = Headline(), Note(), Note(announced=True)
@@ -89,17 +96,25 @@ class Screen(Desk):
         return self.top
 
     def _bottom(self) -> list[ipywidgets.Widget]:
+        """The foot, and below it what the bands hold: few widgets, since each leaves something in the page."""
         self.confirm = ConfirmBand(self)
-        titles = Panel(*(self.field(Words(path=f"title.{name}")) for name in _TITLES), problem=self.tell)
         self.results = {
-            "ladder": Band("Ladder", ipywidgets.HTML(), summary="rule to beam", fill=self._fill),
-            "loads": Band("Loads", ipywidgets.HTML(), fill=self._fill),
-            "ledger": Band("Derivation", ipywidgets.HTML(), fill=self._fill),
+            "ladder": Lid("Ladder", self._fill, summary="rule to beam"),
+            "loads": Lid("Loads", self._fill),
+            "ledger": Lid("Derivation", self._fill),
         }
-        self.confirming = Band("Confirm values", self.confirm.panel, fill=self.confirm.fill)
-        self.block = Band("Title block", titles)
-        bands = (*self.results.values(), self.confirming, self.block)
-        return [Panel(*self.handing.rows(), Row(*bands), problem=self.tell), *(band.content for band in bands)]
+        self.confirming = Lid("Confirm values", self.confirm.fill)
+        self.block = Lid("Title block", self.arrange_foot)
+        self._titles = [self.field(Words(path=f"title.{name}")) for name in _TITLES]
+        self._fixed = (*self.handing.rows(), Row(*self.results.values(), self.confirming, self.block))
+        self.foot, self.parts = Panel(problem=self.tell), ipywidgets.HTML()
+        self.arrange_foot()
+        return [self.foot, self.parts]
+
+    def arrange_foot(self) -> None:
+        """Stand the parts of the open bands below their lines."""
+        titles = self._titles if self.block.open else ()
+        self.foot.arrange(*self._fixed, *titles, *(self.confirm.parts if self.confirming.open else ()))
 
     # --- what is shown -------------------------------------------------------------------------------
 
@@ -130,18 +145,23 @@ class Screen(Desk):
             self.draw()
 
     def show(self) -> None:
+        with self.top.held(), self.form.held(), self.foot.held():
+            self._show()
+
+    def _show(self) -> None:
         wrong = self.wrong
         self.picture.stale = bool(wrong)
-        with self.top.held():
-            self._show_headline(wrong)
-            self.metric.pressed, self.us.pressed = self.look.units == "metric", self.look.units == "us"
-            self.back.disabled, self.forth.disabled = not self.can(-1), not self.can(1)
-            self.say()
-            self.again.hidden = self.over.hidden = not self.conflict
+        self._show_headline(wrong)
+        self.metric.pressed, self.us.pressed = self.look.units == "metric", self.look.units == "us"
+        self.back.disabled, self.forth.disabled = not self.can(-1), not self.can(1)
+        self.say()
+        self.again.hidden = self.over.hidden = not self.conflict
         self.summaries()
         title = self.held.title
         self.block.summary = ", ".join(t for t in (title.revision, title.date, title.by) if t) or "empty"
         self.handing.show(wrong)
+        if self.confirming.open:
+            self.confirm.fill()
         if self.answer is None:
             return
         table = shown.checks_table(self.answer.outcome, self.look.units)
@@ -182,17 +202,17 @@ class Screen(Desk):
             ladder=self.answer.ladder,
             turns=self.answer.turns,
         )
-        for part, band in self.results.items():
-            if band.open:
-                band.content.value = shown.band(made, part)
+        self.parts.value = shown.parts(made, [part for part, lid in self.results.items() if lid.open])
 
     def _show_copy(self) -> None:
         """The picture that outlives the kernel, with its headline."""
-        if self.copy is not None and self.answer is not None and self.sure:
+        if self.copy is not None and self.answer is not None and self.answer.outcome is not self._copied:
+            self._copied = self.answer.outcome
             made = scene(self.answer.outcome, self.look.units)
             self.copy.show(svg(made), f"{self.head.verdict}. {self.head.detail} {made.description}")
 
     copy: StaticCopy | None = None
+    _copied: Outcome | None = None
 
     # --- what the buttons do -------------------------------------------------------------------------
 

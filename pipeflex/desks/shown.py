@@ -1,5 +1,7 @@
 """What a desk shows of an answer beside its picture: checks and bands as HTML, every text of it escaped."""
 
+from collections.abc import Iterable
+
 import numpy as np
 
 from pipeflex import present
@@ -65,6 +67,7 @@ def parts_in_words(load: Load, units: UnitSystem) -> str:
     return f"{words}, to {load.toward(total)}"
 
 
-def band(sheet: Sheet, part: str) -> str:
-    """A part of the sheet as a band of the desk shows it."""
-    return f'<div class="pipeflex"><style>{html.style()}</style>{sheet.part(part)}</div>'
+def parts(sheet: Sheet, names: Iterable[str]) -> str:
+    """Parts of the sheet as the bands of a desk show them."""
+    inner = "".join(f"<div>{sheet.part(name)}</div>" for name in names)
+    return f'<div class="pipeflex"><style>{html.style()}</style>{inner}</div>' if inner else ""

@@ -17,7 +17,7 @@ from .hands import strike
 
 
 def parts(band: ConfirmBand) -> list[Part]:
-    return list(band.panel._by_key.values())
+    return [inner for part in band.parts for inner in (part, *part.parts)]
 
 
 def entries(band: ConfirmBand) -> dict[str, EntryField]:
@@ -60,7 +60,6 @@ def test_a_value_is_confirmed_kept_and_proposed(desk: LoopDesk, band: ConfirmBan
     desk.undo()
     assert one in asked(desk.held)
     assert [c.value for c in user_folder.proposed()] == [130e6]
-    band.fill()
     [take] = [p for p in parts(band) if isinstance(p, Button)]
     assert "130 MPa by AB on 2026-03-01" in take.text
     strike(take, "click")

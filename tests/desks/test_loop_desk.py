@@ -234,7 +234,7 @@ def test_hostile_text_is_data(desk: LoopDesk, text: str) -> None:
     put(desk, "Leg", text)
     for band in desk.results.values():
         strike(band, "toggle", open=True)
-    for shown in (desk.checks.value, *(band.content.value for band in desk.results.values())):
+    for shown in (desk.checks.value, desk.parts.value):
         assert "<img" not in shown
         assert "<script" not in shown
     if not part.error:
@@ -500,14 +500,21 @@ def test_views_and_focus_change_the_picture(desk: LoopDesk) -> None:
 
 
 def test_bands_show_the_sheet(desk: LoopDesk) -> None:
-    for name, words in (("ladder", "guided cantilever"), ("loads", "unfactored"), ("ledger", "S_A")):
-        band = desk.results[name]
-        assert band.content.value == ""
-        strike(band, "toggle", open=True)
-        assert words.split("_")[0] in band.content.value
-    before = desk.results["loads"].content.value
+    assert desk.parts.value == ""
+    for name, words in (("ladder", "guided cantilever"), ("loads", "unfactored"), ("ledger", "Allowable range")):
+        assert words not in desk.parts.value
+        strike(desk.results[name], "toggle", open=True)
+        assert words in desk.parts.value
+    before = desk.parts.value
     put(desk, "Friction", "0.1")
-    assert desk.results["loads"].content.value != before
+    assert desk.parts.value != before
+    for name in desk.results:
+        strike(desk.results[name], "toggle", open=False)
+    assert desk.parts.value == ""
+    assert field(desk, "By") not in desk.foot._parts
+    strike(desk.block, "toggle", open=True)
+    put(desk, "By", "N. Weaver")
+    assert "N. Weaver" in desk.block.summary
 
 
 def test_the_static_copy_follows_the_answer(line: Path, desks: Desks) -> None:
