@@ -329,22 +329,22 @@ def _softened(softness: Array, ways: list[Array | None]) -> list[Array | None]:
 
 def _bend_sag(shape: Shape, prop: Properties, normal: Array, centre: Array) -> Array:
     """Twist of a bend's far end by its own weight: Gauss quadrature, exact to rounding up to a half circle."""
-    along, inward, radius, angle = shape.along, shape.inward, shape.radius, shape.angle
+    along, inward = shape.along[:, None], shape.inward[:, None]
+    radius, angle, normal = shape.radius, shape.angle, normal[:, None]
     last = np.cos(angle) * along + np.sin(angle) * inward
-    movement, rotation = np.zeros_like(along), np.zeros_like(along)
+    node, share = (v[:, None, None] for v in (0.5 * (1.0 + _NODES), 0.5 * _WEIGHTS))
+    sine, cosine = np.sin(node * angle), np.cos(node * angle)
+    tau = cosine * along + sine * inward
+    out = sine * along - cosine * inward
     down = np.zeros_like(along)
-    for node, share in zip(0.5 * (1.0 + _NODES), 0.5 * _WEIGHTS, strict=True):
-        a = node * angle
-        tau = np.cos(a) * along + np.sin(a) * inward
-        out = np.sin(a) * along - np.cos(a) * inward
-        down[UP] = -prop.weight * radius
-        force = down * (angle - a)
-        moment = radius * cross(tau - last, down)
-        ds = share * radius * angle
-        torsion = ds / prop.torsion * (dot(tau, moment) + radius * dot(normal, force))
-        in_plane = ds / prop.bending * (dot(normal, moment) - radius * dot(tau, force))
-        out_plane = ds / prop.bending * dot(out, moment)
-        stretch = ds / prop.axial * dot(tau, force)
-        rotation += torsion * tau + in_plane * normal + out_plane * out
-        movement += radius * torsion * normal + (stretch - radius * in_plane) * tau
-    return _twist(movement, rotation, centre)
+    down[UP] = -prop.weight * radius
+    force = down * (angle - node * angle)
+    moment = radius * cross(tau - last, down)
+    ds = share * radius * angle
+    torsion = ds / prop.torsion * (dot(tau, moment) + radius * dot(normal, force))
+    in_plane = ds / prop.bending * (dot(normal, moment) - radius * dot(tau, force))
+    out_plane = ds / prop.bending * dot(out, moment)
+    stretch = ds / prop.axial * dot(tau, force)
+    rotation = torsion * tau + in_plane * normal + out_plane * out
+    movement = radius * torsion * normal + (stretch - radius * in_plane) * tau
+    return _twist(movement.sum(axis=1), rotation.sum(axis=1), centre)

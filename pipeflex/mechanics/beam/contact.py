@@ -181,11 +181,11 @@ class Contacts:
     def _stiffened(self, own: Array, discs: Indices, way: Array) -> Array:
         """K with what the laws add, (dof, dof): `own` along each, for the `discs` only across their way."""
         laws, whole = self.laws, self.stiffness.copy()
-        own = own.copy()
         if len(discs):
-            other, curve = laws.partner[discs], own[discs]
-            own[discs] = curve * (1.0 - way[discs] ** 2)
-            whole[laws.dof[discs], laws.dof[other]] -= curve * way[discs] * way[other]
+            own, other = own.copy(), laws.partner[discs]
+            along = own[discs] * way[discs]
+            own[discs] -= along * way[discs]
+            whole[laws.dof[discs], laws.dof[other]] -= along * way[other]
         whole[self.diagonal, self.diagonal] += self.sums @ own
         return whole
 
