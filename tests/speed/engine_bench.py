@@ -5,12 +5,18 @@ python -m tests.speed.engine_bench
 
 import time
 from collections.abc import Callable
+from dataclasses import replace
+from pathlib import Path
 from typing import Any
 
 import numpy as np
 
+from pipeflex.files.design_file import load
 from pipeflex.mechanics.beam import Hold, Run, Section, States, Support, assemble, influence, linear, moments, settle
+from pipeflex.methods import solve
+from pipeflex.model.layout import Corner
 from tests.engine.chords import by_calfem, by_pynite, chord_model
+from tests.speed.bench_columns import SHAPES, columns, design_of
 
 REST = Hold(direction="vertical")
 
@@ -168,8 +174,31 @@ def many_supports() -> None:
         print(f"    {took[0] / count * 1e6:.3g} us a guide")
 
 
+def traced() -> None:
+    """The demo design with its ledger: with all friction states, and without rests."""
+    design = load(Path(__file__).parents[2] / "notebooks" / "line-1204.toml")
+    say("demo design solved with trace, all friction states", median(lambda: solve(design, "beam_flexibility"), 30))
+    smooth = replace(design, layout=replace(design.layout, rest_spacing=None))
+    say("  the same without rests", median(lambda: solve(smooth, "beam_flexibility"), 100))
+
+
+def end_to_end(rows: int = 100_000) -> None:
+    """Columns of L, Z and U lines, each line its own pipe, metal, bends and temperatures, from design to outcome."""
+    rng, designs = np.random.default_rng(5), []
+    for shape in SHAPES:
+        c = columns(rows // 3, rng)
+        c |= {"leg": c["leg"] + 4 * c["D"], "width": c["width"] + 4 * c["D"]}
+        made = design_of(shape, c)
+        bends = (Corner(kind="bend", radius=1.5 * c["D"]),)
+        designs.append(replace(made, layout=replace(made.layout, corners=bends)))
+    took = median(lambda: [solve(design, "beam_flexibility") for design in designs], 5)
+    say(f"{rows} mixed L, Z and U lines, end to end", took, "s")
+
+
 if __name__ == "__main__":
     one_design()
+    traced()
+    end_to_end()
     maps()
     mixed_lines()
     slider()
