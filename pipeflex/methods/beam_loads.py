@@ -227,7 +227,7 @@ def _load(
     """One component of the load on one point; what rounding leaves of nothing is nothing."""
 
     def clean(values: Rows) -> Rows:
-        return np.where(np.abs(values) > _NOTHING * scale, values, 0.0)
+        return np.where(np.abs(values) > _NOTHING * scale, values, 0.0) if values.any() else values
 
     return Load(
         point=point, name=name, positive=positive, negative=negative, kind=kind, states=states,
