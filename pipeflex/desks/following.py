@@ -17,6 +17,9 @@ class Step(NamedTuple):
     fault: Callable[[Exception], None]
 
 
+_tasks: set[asyncio.Task[None]] = set()
+
+
 @cache
 def _worker() -> Executor:
     return ThreadPoolExecutor(1, "pipeflex")
@@ -41,7 +44,10 @@ class Following:
                 if not _taken(step):
                     return
             return
-        self._under_way = loop, loop.create_task(_run(loop, steps))
+        task = loop.create_task(_run(loop, steps))
+        _tasks.add(task)  # the loop itself holds on to no task
+        task.add_done_callback(_tasks.discard)
+        self._under_way = loop, task
 
     def stop(self) -> None:
         if self._under_way is not None:

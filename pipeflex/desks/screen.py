@@ -34,7 +34,7 @@ _WAITING: Final = "\u2026"
 _FAILING: Final = "\u2715"
 _DIMENSIONED: Final = ("layout.sizes.", "layout.first_guide", "limits.room")
 """Fields that have a dimension on the drawing."""
-_LOWEST: Final = 294
+_LOWEST: Final = 300
 """Height of the picture, so that the first screen is whole in a narrow page [px]."""
 _HIGHEST: Final = 440
 _RISE: Final = 0.4
@@ -46,7 +46,6 @@ _SCALE: Final = 3.6
 _NARROWEST: Final = 110.0
 """Least paper of a drawing [mm]."""
 _TITLES: Final = ("title", "project", "date", "revision", "by", "checked")
-_LOADS: Final = "Loads: pipe on steel, unfactored"
 
 
 class Screen(Desk):
@@ -63,15 +62,13 @@ class Screen(Desk):
 
     def compose(self) -> Sequence[ipywidgets.Widget]:
         self.view, self.viewpoint, self._lit = "plan", 0, ""
+        self.left_out: tuple[str, ...] = ()
         self.handing = Handing(self)
         self.picture = PictureView(height=_LOWEST, colours=dict(COLOURS), width=self._known_width())
         self.picture.observe(shielded(lambda _: self.draw(), self.tell), "width")
         self.checks = ipywidgets.HTML()
-        self.views = {name: Button(name, self._viewer(name), pressed=name == self.view) for name in VIEWS}
-        self.turn = Button("turn", self._turn_view, help="the next of four viewpoints", hidden=True)
-        self.said = Note()
         right = ipywidgets.VBox(
-            [Panel(Row(*self.views.values(), self.turn, self.said), problem=self.tell), self.picture, self.checks],
+            [self.picture, self.checks],
             layout=ipywidgets.Layout(flex="1 1 0", min_width="0", overflow="hidden"),
         )
         self.form = self.entries()
@@ -91,7 +88,10 @@ class Screen(Desk):
         self.ask = Button("confirm", self._ask, help="the table values from memory that this design uses")
         self.again = Button("Read it again", self.read_again, hidden=True)
         self.over = Button("Write over it", self.write_over, hidden=True)
-        switches = Row(self.memory, self.ask, Note(), self.metric, self.us, self.back, self.forth)
+        self.views = {name: Button(name, self._viewer(name), pressed=name == self.view) for name in VIEWS}
+        self.turn = Button("turn", self._turn_view, help="the next of four viewpoints", hidden=True)
+        looks = (*self.views.values(), self.turn, Note(), self.metric, self.us, self.back, self.forth)
+        switches = Row(self.memory, self.ask, Note(), *looks)
         self.top = Panel(self.head, switches, Row(self.trouble, self.again, self.over), problem=self.tell)
         return self.top
 
@@ -137,8 +137,7 @@ class Screen(Desk):
             self.picture.height = height
             self.picture.scene = figure(made, _SCALE)
             self.picture.description = made.description
-        room = f"No room for {', '.join(made.left_out)}. " if made.left_out else ""
-        self.said.text = f"{room}{_LOADS}"
+        self.left_out = made.left_out
 
     def light(self) -> None:
         if (self.focus if self.focus.startswith(_DIMENSIONED) else "") != self._lit:
@@ -164,7 +163,7 @@ class Screen(Desk):
             self.confirm.fill()
         if self.answer is None:
             return
-        table = shown.checks_table(self.answer.outcome, self.look.units)
+        table = shown.checks_table(self.answer.outcome, self.look.units, self.left_out)
         self.checks.value = f'<div class="pf-last-good">{table}</div>' if wrong else table
         if self.answer.whole and not wrong:
             self._fill()

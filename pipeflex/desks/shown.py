@@ -1,6 +1,6 @@
 """What a desk shows of an answer beside its picture: checks and bands as HTML, every text of it escaped."""
 
-from collections.abc import Iterable
+from collections.abc import Iterable, Sequence
 
 import numpy as np
 
@@ -15,11 +15,15 @@ from pipeflex.sheet.page import Sheet
 
 _LONGEST = 36
 """Longest text of a place that stands in one line; a longer one leaves the states to the tooltip."""
+_LOADS = "Loads are working loads, unfactored, of the pipe on the steel."
 _LOOKS = {Judgement.EXCEEDED: "pf-state pf-exceeded"}
 
 
-def checks_table(outcome: Outcome, units: UnitSystem = "metric") -> str:
-    """Every check in one line: demand and limit, ratio, state, where; anchors with the parts of their force."""
+def checks_table(outcome: Outcome, units: UnitSystem = "metric", left_out: Sequence[str] = ()) -> str:
+    """Every check in one line: demand and limit, ratio, state, where; anchors with the parts of their force.
+
+    left_out : labels for which there was no room in the picture above.
+    """
     shown = zip(results.checks(outcome, units), outcome.checks, strict=True)
     lines = []
     for row, check in shown:
@@ -37,7 +41,9 @@ def checks_table(outcome: Outcome, units: UnitSystem = "metric") -> str:
         )
         inner = "".join(f'<td class="{name}">{escaped(text)}</td>' for name, text in cells)
         lines.append(f'<tr title="{escaped("; ".join(t for t in (row.where, row.reason) if t))}">{inner}</tr>')
-    return '<table class="pf-checks"><tbody>' + "".join(lines) + "</tbody></table>"
+    words = [_LOADS, f"No room in the picture for {', '.join(left_out)}."] if left_out else [_LOADS]
+    caption = f"<caption>{escaped(' '.join(words))}</caption>"
+    return f'<table class="pf-checks">{caption}<tbody>{"".join(lines)}</tbody></table>'
 
 
 def _against(demand: str, limit: str) -> str:
