@@ -175,8 +175,8 @@ class Contacts:
 
     def _given(self, step: _Step, soft: _Softness, trial: Array) -> Array:
         size, acts = self._sizes(soft, trial)
-        kept = np.minimum(size - soft.dead, step.limit) / np.maximum(size, _TINY)
-        return np.where(acts, kept * trial, 0.0)
+        over = np.where(acts, size - soft.dead, 0.0)
+        return np.minimum(over, step.limit) / np.maximum(size, _TINY) * trial
 
     def _stiffened(self, own: Array, discs: Indices, way: Array) -> Array:
         """K with what the laws add, (dof, dof): `own` along each, for the `discs` only across their way."""
