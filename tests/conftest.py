@@ -15,6 +15,11 @@ def pytest_configure():
     os.environ.pop("PIPEFLEX_HOME", None)  # tables are listed while tests are collected
 
 
+def pytest_collection_modifyitems(items):
+    """Browser tests last: what drives the browser leaves an event loop running in the process."""
+    items.sort(key=lambda item: "browser" in item.path.parts)
+
+
 @pytest.fixture(autouse=True)
 def empty_home(tmp_path_factory, monkeypatch):
     """A user's folder with nothing in it."""

@@ -6,7 +6,8 @@ import re
 import numpy as np
 import pytest
 
-import pipeflex.methods  # noqa: F401  registers the formulas
+import pipeflex.codes.b31_3  # registers the formulas of the codes
+import pipeflex.methods  # noqa: F401  and all others
 from pipeflex import present
 from pipeflex.formulas import FORMULAS, Choice, Formula, formula_of
 from pipeflex.mechanics import cantilever
@@ -28,7 +29,8 @@ def numbers(formula: Formula, seed: int) -> dict[str, float]:
     for name in formula.parameters:
         unit = present.display(SYMBOLS[name].kind)
         low = 2.0 if unit.unit in ("", "°") else 10.0
-        values[name] = round(float(rng.uniform(low, 5 * low)), 1) * float(unit.factor) + float(unit.offset)
+        amount = round(float(rng.uniform(low, 5 * low)), min(1, unit.decimals))
+        values[name] = amount * float(unit.factor) + float(unit.offset)
     return values
 
 
