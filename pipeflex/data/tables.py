@@ -182,17 +182,13 @@ class Table:
             cells = self.texts(column)
             matching = [row for row in rows if cells[row] == wanted]
             if not matching:
-                raise TableError(
-                    Fault(f"{self.id}: {column}", wanted, near=near(wanted, [cells[r] for r in rows]))
-                )
+                raise TableError(Fault(f"{self.id}: {column}", wanted, near=near(wanted, [cells[r] for r in rows])))
             rows = matching
         return rows[0]
 
     def _column(self, name: str) -> Column:
         if name not in self.columns:
-            raise TableError(
-                Fault(self.id, name, allowed="a column of the table", near=near(name, self.columns))
-            )
+            raise TableError(Fault(self.id, name, allowed="a column of the table", near=near(name, self.columns)))
         return self.columns[name]
 
     def _source(self, document: str) -> str:
@@ -269,17 +265,11 @@ def _read(id: str, path: Path, origin: str, _changed: int) -> Table:
         columns=MappingProxyType(columns),
         rows=tuple(map(tuple, rows)),
         _numbers=MappingProxyType(
-            {
-                c.name: _si(id, c, [row[place] for row in rows])
-                for place, c in enumerate(columns.values())
-                if c.unit
-            }
+            {c.name: _si(id, c, [row[place] for row in rows]) for place, c in enumerate(columns.values()) if c.unit}
         ),
     )
     if index is not None and not np.all(np.diff(made.numbers(index)) > 0):
-        raise InputError(
-            Fault(f"{id}: {index}", "the rows out of order", allowed="rising numbers, none blank")
-        )
+        raise InputError(Fault(f"{id}: {index}", "the rows out of order", allowed="rising numbers, none blank"))
     return made
 
 
@@ -361,7 +351,5 @@ def _reference(id: str, text: str) -> float | None:
         return None
     number, _, name = text.partition(" ")
     if name not in ("degC", "degF") or not _NUMBER.fullmatch(number):
-        raise InputError(
-            Fault(f"{id}.toml: reference_temperature", text, allowed='such as "20 degC" or "70 degF"')
-        )
+        raise InputError(Fault(f"{id}.toml: reference_temperature", text, allowed='such as "20 degC" or "70 degF"'))
     return float(Q(number) * UNITS[name].factor + UNITS[name].offset)

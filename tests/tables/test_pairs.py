@@ -46,7 +46,9 @@ def test_columns_say_unit_kind_and_meaning(id):
 @pytest.mark.parametrize("id", IDS)
 def test_source_and_provenance_are_said(id):
     held = table(id)
-    assert held.title and held.document and held.source.startswith(held.document)
+    assert held.title
+    assert held.document
+    assert held.source.startswith(held.document)
     recalled = [name for name in held.columns if held.provenance_of(name) == "memory"]
     assert held.confirm == bool(recalled)
     assert held.provenance in PROVENANCES
@@ -69,18 +71,22 @@ def test_source_and_provenance_are_said(id):
 def test_curves_rise_along_their_index_and_say_what_holds_outside(id):
     held = table(id)
     assert held.interpolation in ("linear", "linear in growth")
-    assert held.below and held.above
+    assert held.below
+    assert held.above
     for name, column in held.columns.items():
         if column.kind != TEXT:
             x, y = held.curve(name)
-            assert np.all(np.diff(x) > 0) and np.isfinite(y).all() and len(x) > 1
+            assert np.all(np.diff(x) > 0)
+            assert np.isfinite(y).all()
+            assert len(x) > 1
 
 
 @pytest.mark.parametrize("id", [id for id in IDS if id.startswith("expansion/")])
 def test_expansion_has_its_reference_temperature_as_a_row(id):
     held = table(id)
     reference = held.reference_temperature
-    assert reference is not None and reference in held.numbers("temperature")
+    assert reference is not None
+    assert reference in held.numbers("temperature")
     for name, column in held.columns.items():
         if column.kind == "strain":
             x, y = held.curve(name)

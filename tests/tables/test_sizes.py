@@ -67,7 +67,7 @@ def test_walls_of_a_size_rise_and_none_is_listed_twice():
     assert all(b[1] > a[1] for a, b in pairwise(sizes) if a[0] == b[0])
     diameters = [float(cell) for cell in held.texts("od_in")]
     assert diameters == sorted(diameters)
-    assert {nps: od for nps, od in zip(held.texts("nps"), held.texts("od_in"), strict=True)}["48"] == "48.000"
+    assert dict(zip(held.texts("nps"), held.texts("od_in"), strict=True))["48"] == "48.000"
 
 
 def test_plain_end_weights():
@@ -136,7 +136,7 @@ def test_long_and_short_radius_elbows():
             if not (column == "long" and size < 1):
                 assert float(inch) == pytest.approx(times * size, abs=0.0051)
     en = table("fittings/elbow_en_10253")
-    same = {dn: mm for dn, mm in zip(held.texts("dn"), held.texts("long_mm"), strict=True)}
+    same = dict(zip(held.texts("dn"), held.texts("long_mm"), strict=True))
     differing = {dn for dn, mm in zip(en.texts("dn"), en.texts("r_3d_mm"), strict=True) if same[dn] != mm}
     assert differing == {"15", "20"}
 
@@ -149,4 +149,5 @@ def test_en_type_names_count_half_nominal_diameters():
         large = (dn >= 100) & ~np.isnan(radius)
         assert np.abs(radius[large] / (times * dn[large]) - 1).max() < 0.085
     od = en.numbers("od_mm") * 1e3
-    assert np.all(np.diff(od) > 0) and od[en.find(dn="300")] == pytest.approx(323.9)
+    assert np.all(np.diff(od) > 0)
+    assert od[en.find(dn="300")] == pytest.approx(323.9)
