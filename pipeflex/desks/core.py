@@ -35,6 +35,8 @@ from pipeflex.present import UNIT_SYSTEMS, UnitSystem
 IDLE: float = 0.25
 """How long the user must have been idle before the whole answer is worked out, and each step after it [s]."""
 
+_STEADY: float = 2.0
+"""Changes that follow each other sooner than this are steps of one search: what follows waits longer [s]."""
 _GLANCE: float = 0.03
 """How long a field must have had the keyboard before its dimension is lit [s]."""
 _LATE: float = 2.0
@@ -85,6 +87,7 @@ class Desk:
         self.problem = self.saved = self.focus = ""
         self.conflict = False
         self._entries = Entries(self)
+        self._changed = 0.0
         self._past: list[Design] = []
         self._now = 0
         self._following, self._lights = Following(), Following()
@@ -200,9 +203,9 @@ class Desk:
         self.design, self.answer, self.problem = design, answer, ""
         if not same:
             self.draw()
-        self.show()
-        self._entries.refresh()
         self._save()
+        self._entries.refresh()
+        self.show()
         if not same:
             self._follow()
 
@@ -248,7 +251,9 @@ class Desk:
             (lambda: ladder(design), lambda answer, rungs: replace(answer, ladder=rungs)),
             (lambda: reserve(design), lambda answer, turns: replace(answer, turns=turns, complete=True)),
         )
-        steps = [Step(IDLE, work, functools.partial(self._add, design, join), self.fault) for work, join in works]
+        now = time.monotonic()
+        idle, self._changed = IDLE * (3 if now - self._changed < _STEADY else 1), now
+        steps = [Step(idle, work, functools.partial(self._add, design, join), self.fault) for work, join in works]
         self._following.start(steps)
 
     @in_turn
@@ -356,13 +361,13 @@ class Desk:
         except PipeflexError as error:
             self.saved = f"not saved in {self.file.path.name}"
             self.problem, self.conflict = error.text(self.look.units), self.file.is_changed_elsewhere
-        self.show()
 
     @in_turn
     def write_over(self) -> None:
         """Save over what another hand has written."""
         self.problem = ""
         self._save(over=True)
+        self.show()
 
     def tell(self, error: Exception) -> None:
         """Show an error that belongs to no field."""
