@@ -32,4 +32,4 @@ def test_the_page_opens_with_the_job_in_one_paragraph():
     head, first, second, *_ = README.read_text(encoding="utf-8").split("\n\n")
     assert head == "# pipeflex"
     assert "piping engineer" in first
-    assert second.startswith("## ")
+    assert second.startswith(("![", "## "))
