@@ -121,11 +121,12 @@ class ConfirmBand:
 
     def _line(self, one: Asked, known: Confirmed | None, units: UnitSystem) -> Part:
         unit = ascii_unit(present.display(one.kind, units).unit)
-        entry = EntryField(one.words(units), "", lambda text: self._confirm(one, text), unit=unit, help="as printed")
+        words = one.words(units)
+        entry = EntryField(words, "", lambda text: self._confirm(one, text), unit=unit, help="as printed", bare=True)
         if known is None:
-            return Row(entry)
+            return Row(Note(words), entry)
         said = f"{plain_text(known.value, known.kind, units)} by {known.by} on {known.date}"
-        return Row(entry, Button(f"Take {said}", lambda: self._take(known)))
+        return Row(Note(words), entry, Button(f"Take {said}", lambda: self._take(known)))
 
     def _keep(self, name: str):  # type: ignore[no-untyped-def]
         def keep(text: str) -> tuple[bool, str, str]:

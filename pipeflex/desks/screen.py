@@ -37,6 +37,7 @@ _DIMENSIONED: Final = ("layout.sizes.", "layout.first_guide", "limits.room")
 _LOWEST: Final = 300
 """Height of the picture, so that the first screen is whole in a narrow page [px]."""
 _HIGHEST: Final = 440
+"""Height of a very wide picture, and of an isometric one [px]."""
 _RISE: Final = 0.4
 """Height of a wider picture, as a part of its width."""
 _WIDTH: Final = 522
@@ -123,7 +124,7 @@ class Screen(Desk):
             return
         self._lit = self.focus if self.focus.startswith(_DIMENSIONED) else ""
         width = self.picture.width or _WIDTH
-        height = int(min(max(_LOWEST, _RISE * width), _HIGHEST))
+        height = _HIGHEST if self.view == "isometric" else int(min(max(_LOWEST, _RISE * width), _HIGHEST))
         made = scene(
             self.answer.outcome,
             self.look.units,
