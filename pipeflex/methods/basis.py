@@ -7,7 +7,6 @@ from typing import Any, Final
 
 import numpy as np
 
-from pipeflex import present
 from pipeflex.data import lookup
 from pipeflex.data.materials import stress_curve
 from pipeflex.mechanics import expansion, section
@@ -297,8 +296,3 @@ def table_values(design: Design) -> tuple[tuple[Curve, int], ...]:
     ]
     found = [(curve, i) for curve, ts in wanted for t in sorted(ts) for i in lookup.points_used(curve, t)]
     return tuple({(id(curve), i): (curve, i) for curve, i in found}.values())
-
-
-def span_words(design: Design, units: present.UnitSystem = "metric") -> str:
-    """Coldest to hottest of a single design, in words."""
-    return present.span(float(design.coldest()[0]), float(design.hottest()[0]), "temperature", units)

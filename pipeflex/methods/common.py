@@ -26,7 +26,7 @@ class Outside:
         self.reasons: list[Remark] = []
         self.notes: list[Remark] = []
 
-    def add(self, text: str, where: Any, place: object = None, **values: tuple[Any, str]) -> None:
+    def add(self, text: str, where: Any, **values: tuple[Any, str]) -> None:
         """A reason, for the rows where it holds."""
         if not np.any(where):
             return

@@ -84,9 +84,9 @@ def limits(design: Design, basis: Basis) -> Outside:
     outside = Outside(design.rows or 1)
     layout = design.layout
     unseen(design, outside)
-    for i, s in enumerate(layout.supports):
+    for s in layout.supports:
         between = s.kind == "line stop" or (s.kind == "guide" and 1 < s.leg < layout.leg_count)
-        outside.add(f"A {s.kind} on leg {s.leg} between the ends", between and bool(s.kind), place=i)
+        outside.add(f"A {s.kind} on leg {s.leg} between the ends", between)
     for corner in layout.corners:
         outside.note(f"The rule does not see the stress intensification of corners ({corner.kind}).",
                      corner.kind not in ("bend", "square"))  # fmt: skip

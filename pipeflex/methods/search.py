@@ -8,7 +8,7 @@ from typing import Any, Final
 import numpy as np
 
 from pipeflex.errors import Fault, InputError, MissingInput, PipeflexError, refuse
-from pipeflex.methods.solving import METHODS, method, solve
+from pipeflex.methods.solving import method, solve
 from pipeflex.model.design import Design
 from pipeflex.model.fields import SPEC, FrozenMap, Number
 from pipeflex.model.layout import SIZE_WORDS
@@ -334,8 +334,3 @@ def _turn(design: Design, path: str, present: float, low: float, high: float, st
             if math.isnan(best) or abs(end - present) < abs(best - present):
                 best = end
     return best
-
-
-def highest() -> str:
-    """Key of the highest method."""
-    return METHODS[-1].key
